@@ -122,6 +122,7 @@ func (m *Model) addClasses() {
 // coef holds a segment's parameters per step: flows in passenger cars per step, contents per cell.
 type coef struct {
 	linear   bool
+	narrowed bool    // fewer lanes than the link has: a cell may hold more than fits
 	a, b     float64 // Courant numbers of the free and the congested branch
 	q, nj    float64 // capacity per step, storage per cell
 	critical float64 // content at critical density
@@ -138,6 +139,7 @@ func newCoef(seg *Segment, r *Road, link *network.Link, step float64) coef {
 		jam:      link.Diagram.Jam() * link.Lanes * seg.Dx,
 	}
 	c.q = diagram.Capacity(r.Diagram) * c.perStep
+	c.narrowed = r.Lanes < link.Lanes
 	if v, q, w, kj, ok := diagram.AsLinear(r.Diagram); ok {
 		c.linear = true
 		c.a, c.b = min(1, v*step/seg.Dx), min(1, w*step/seg.Dx)

@@ -66,11 +66,14 @@ func (s *Segment) of(x []float64) []float64 { return x[s.First : s.First+s.Cells
 // advance moves one segment's content.
 func (m *Model) advance(s int) {
 	c, n := &m.coefs[s], m.grid.Segments[s].of(m.n)
-	if c.linear {
+	switch {
+	case !c.linear:
+		kernel.Advance(n, m.faces(s, n), m.in[s])
+	case c.narrowed:
+		kernel.LinearOverfull(n, c.a, c.q, c.b, c.nj, m.in[s], m.out[s])
+	default:
 		kernel.Linear(n, c.a, c.q, c.b, c.nj, m.in[s], m.out[s])
-		return
 	}
-	kernel.Advance(n, m.faces(s, n), m.in[s])
 }
 
 // faces computes the flows out of each cell of a segment into scratch.

@@ -4,36 +4,44 @@ package kernel
 
 // Linear advances a run of cells of one piecewise-linear diagram by one step, in place and in one pass:
 //
-//	y[i]  = min(a n[i], q, b (nj - n[i+1])), at least 0      flow from cell i to i+1
+//	y[i]  = min(a n[i], q, b (nj - n[i+1]))      flow from cell i to i+1
 //	n[i] += y[i-1] - y[i]
 //
 // with y[-1] = in and y[len(n)-1] = out given by the nodes. a and b are the Courant numbers of the two
-// branches (0..1), q the capacity and nj the storage of a cell. (Daganzo 1994, Transportation Research B
-// 28:269-287, equation 3.)
+// branches (0..1), q the capacity and nj the storage of a cell, which no content may exceed. (Daganzo 1994,
+// Transportation Research B 28:269-287, equation 3.)
 func Linear(n []float64, a, q, b, nj, in, out float64) {
-	last := len(n) - 1
-	if last < 0 {
+	if len(n) == 0 {
 		return
 	}
+	from := n[:len(n)-1]
+	to := n[1:][:len(from)]
 	here := n[0]
-	for i := 0; i < last; i++ {
-		next := n[i+1]
-		y := a * here
-		r := b * (nj - next)
-		if q < y {
-			y = q
-		}
-		if r < y {
-			y = r
-		}
-		if y < 0 {
-			y = 0
-		}
-		n[i] = here + (in - y)
-		in = y
-		here = next
+	for i := range from {
+		next := to[i]
+		y := min(a*here, q, b*(nj-next))
+		from[i] = here + (in - y)
+		in, here = y, next
 	}
-	n[last] = here + (in - out)
+	n[len(n)-1] = here + (in - out)
+}
+
+// LinearOverfull is Linear for a run that may hold more than it can store, because lanes were closed under its
+// traffic: nothing enters such a cell until it has drained.
+func LinearOverfull(n []float64, a, q, b, nj, in, out float64) {
+	if len(n) == 0 {
+		return
+	}
+	from := n[:len(n)-1]
+	to := n[1:][:len(from)]
+	here := n[0]
+	for i := range from {
+		next := to[i]
+		y := max(0, min(a*here, q, b*(nj-next)))
+		from[i] = here + (in - y)
+		in, here = y, next
+	}
+	n[len(n)-1] = here + (in - out)
 }
 
 // LinearFaces writes the flows out of each cell of a run into y without moving anything; the last is out.
