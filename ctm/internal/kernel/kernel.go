@@ -119,7 +119,8 @@ func Sum(n, x []float64, pce float64) {
 }
 
 // Flush sets contents below tiny to zero. Contents that decay towards zero would otherwise become denormal
-// numbers, with which this machine's arithmetic is many times slower (see BenchmarkDenormal).
+// numbers, with which the arithmetic of many processors is many times slower (BenchmarkDenormal tells for the
+// one at hand).
 func Flush(n []float64, tiny float64) {
 	for i := range n {
 		if n[i] < tiny {
