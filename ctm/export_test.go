@@ -7,7 +7,7 @@ func (m *Model) SetCars(n []float64) {
 	for i := range m.grid.Links {
 		l := m.grid.Links[i]
 		for _, x := range n[l.First : l.First+l.Cells] {
-			m.count.inside[0][i] += x
+			m.count[0][i].inside += x
 		}
 	}
 }

@@ -3,6 +3,7 @@ package ctm
 import (
 	"errors"
 	"fmt"
+	"math"
 	"slices"
 
 	"example.org/tailback/demand"
@@ -12,13 +13,14 @@ import (
 
 // Model is a scenario on its grid, with its state. One goroutine steps it.
 type Model struct {
-	sc    *Scenario
-	grid  *Grid
-	step  int
-	roads []Road   // by segment, in force
-	coefs []coef   // by segment, in force
-	lim   *Limits  // in force
-	plan  schedule // when limits change
+	sc      *Scenario
+	grid    *Grid
+	step    int
+	roads   []Road   // by segment, in force
+	coefs   []coef   // by segment, in force
+	lim     *Limits  // in force
+	limited []int    // links whose end is limited
+	plan    schedule // when limits change
 
 	n       []float64   // passenger cars per cell
 	classes [][]float64 // vehicles per class and cell; nil with one class
@@ -32,17 +34,18 @@ type Model struct {
 	sources     []source
 	exits       []exit
 
-	count  tally
+	count  [][]tally // by class and link
+	lastOf []int     // by link: its last segment
 	wk     work
 	demand *demand.Demand
 	turnAt float64 // when turning fractions change next
 }
 
-// tally holds what has crossed each link's ends since the start, in vehicles: [class][link].
+// tally holds what has crossed a link's ends since the start, in vehicles of one class.
 type tally struct {
-	in, out [][]float64
-	inside  [][]float64 // vehicles on the link
-	time    [][]float64 // vehicle-seconds spent on the link
+	in, out float64
+	inside  float64 // on the link now
+	seconds float64 // vehicle-seconds spent on the link
 }
 
 // work is scratch for one run of cells at a time.
@@ -71,10 +74,13 @@ func New(sc *Scenario) (*Model, error) {
 		lim: newLimits(g),
 	}
 	m.plan = newSchedule(sc)
+	for i := range g.Links {
+		m.lastOf = append(m.lastOf, g.Links[i].Last())
+	}
 	m.addClasses()
 	m.addSources()
 	m.addNodes()
-	longest := 1
+	longest := 2
 	for s := range g.Segments {
 		longest = max(longest, g.Segments[s].Cells)
 	}
@@ -107,10 +113,7 @@ func (m *Model) addClasses() {
 	links := len(m.grid.Links)
 	for _, c := range classes {
 		m.pce = append(m.pce, c.PCE)
-		m.count.in = append(m.count.in, make([]float64, links))
-		m.count.out = append(m.count.out, make([]float64, links))
-		m.count.inside = append(m.count.inside, make([]float64, links))
-		m.count.time = append(m.count.time, make([]float64, links))
+		m.count = append(m.count, make([]tally, links))
 		if len(classes) > 1 {
 			m.classes = append(m.classes, make([]float64, m.grid.Cells))
 			m.inC = append(m.inC, make([]float64, len(m.grid.Segments)))
@@ -121,7 +124,9 @@ func (m *Model) addClasses() {
 
 // coef holds a segment's parameters per step: flows in passenger cars per step, contents per cell.
 type coef struct {
+	from, to int // its cells: from <= i < to
 	linear   bool
+	shut     bool    // nothing may enter
 	narrowed bool    // fewer lanes than the link has: a cell may hold more than fits
 	a, b     float64 // Courant numbers of the free and the congested branch
 	q, nj    float64 // capacity per step, storage per cell
@@ -134,7 +139,7 @@ type coef struct {
 
 func newCoef(seg *Segment, r *Road, link *network.Link, step float64) coef {
 	c := coef{
-		d: r.Diagram, perLane: 1 / (seg.Dx * r.Lanes), perStep: r.Lanes * step,
+		from: seg.First, to: seg.First + seg.Cells, d: r.Diagram, perLane: 1 / (seg.Dx * r.Lanes), perStep: r.Lanes * step,
 		critical: r.Diagram.Critical() * r.Lanes * seg.Dx,
 		jam:      link.Diagram.Jam() * link.Lanes * seg.Dx,
 	}
@@ -148,15 +153,27 @@ func newCoef(seg *Segment, r *Road, link *network.Link, step float64) coef {
 	return c
 }
 
-// ends gives the sending flow of a cell with content last and the receiving flow of one with content first.
-func (c *coef) ends(first, last float64) (receiving, sending float64) {
-	if c.linear {
-		return max(0, min(c.q, c.b*(c.nj-first))), min(c.a*last, c.q)
+// ends finds the receiving flow of each segment's first cell and the sending flow of its last one.
+func (m *Model) ends() {
+	for s := range m.coefs {
+		c := &m.coefs[s]
+		first, last := m.n[c.from], m.n[c.to-1]
+		if c.linear {
+			m.first[s], m.last[s] = max(0, min(c.q, c.b*(c.nj-first))), min(c.a*last, c.q)
+		} else {
+			k, sending, receiving := m.wk.k[:2], m.wk.sending[:2], m.wk.receiving[:2]
+			k[0], k[1] = first*c.perLane, last*c.perLane
+			c.fill(sending, receiving, k)
+			m.first[s], m.last[s] = receiving[0]*c.perStep, min(sending[1]*c.perStep, last)
+		}
+		if c.shut {
+			m.first[s] = 0
+		}
 	}
-	k := [2]float64{first * c.perLane, last * c.perLane}
-	var s, r [2]float64
-	c.fill(s[:], r[:], k[:])
-	return r[0] * c.perStep, min(s[1]*c.perStep, last)
+	for _, link := range m.limited {
+		s := m.grid.Links[link].Last()
+		m.last[s] = min(m.last[s], m.lim.LinkEnd[link]*m.grid.Step)
+	}
 }
 
 // fill computes sending and receiving per lane at densities per lane.
@@ -173,6 +190,13 @@ func (m *Model) refresh() {
 		link := &m.sc.Network.Links[seg.Link]
 		m.roads[s] = road(link, &m.lim.Segments[s])
 		m.coefs[s] = newCoef(seg, &m.roads[s], link, m.grid.Step)
+		m.coefs[s].shut = m.lim.Segments[s].Shut
+	}
+	m.limited = m.limited[:0]
+	for i, flow := range m.lim.LinkEnd {
+		if !math.IsInf(flow, 1) {
+			m.limited = append(m.limited, i)
+		}
 	}
 	m.refreshNodes()
 }

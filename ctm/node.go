@@ -301,12 +301,12 @@ func (m *Model) updateSite(nd *node, k int) {
 	nd.sites[k].update(queued, m.queuedAtStart(nd.outs[k]), nd.out[k] >= nd.problem.Receiving[k]*(1-1e-6))
 }
 
-func (m *Model) lastCell(s int) int { return m.grid.Segments[s].First + m.grid.Segments[s].Cells - 1 }
+func (m *Model) lastCell(s int) int { return m.coefs[s].to - 1 }
 
 func (m *Model) queuedAtEnd(s int) bool {
 	return m.n[m.lastCell(s)] > m.coefs[s].critical*(1+dropBand)
 }
 
 func (m *Model) queuedAtStart(s int) bool {
-	return m.n[m.grid.Segments[s].First] > m.coefs[s].critical*(1+dropBand)
+	return m.n[m.coefs[s].from] > m.coefs[s].critical*(1+dropBand)
 }

@@ -27,17 +27,7 @@ func (m *Model) Step() {
 		m.refreshTurns()
 	}
 	m.arrive()
-	for s := range m.coefs {
-		seg := &m.grid.Segments[s]
-		m.first[s], m.last[s] = m.coefs[s].ends(m.n[seg.First], m.n[seg.First+seg.Cells-1])
-		if m.lim.Segments[s].Shut {
-			m.first[s] = 0
-		}
-	}
-	for i := range m.grid.Links {
-		s := m.grid.Links[i].Last()
-		m.last[s] = min(m.last[s], m.lim.LinkEnd[i]*m.grid.Step)
-	}
+	m.ends()
 	m.cross()
 	m.enter()
 	if m.classes == nil {
@@ -60,12 +50,13 @@ func (m *Model) Step() {
 	}
 }
 
-// cells are the contents of a segment's cells.
-func (s *Segment) of(x []float64) []float64 { return x[s.First : s.First+s.Cells] }
+// of returns the segment's part of a list by cell.
+func (c *coef) of(x []float64) []float64 { return x[c.from:c.to] }
 
 // advance moves one segment's content.
 func (m *Model) advance(s int) {
-	c, n := &m.coefs[s], m.grid.Segments[s].of(m.n)
+	c := &m.coefs[s]
+	n := c.of(m.n)
 	switch {
 	case !c.linear:
 		kernel.Advance(n, m.faces(s, n), m.in[s])
@@ -113,7 +104,7 @@ func (m *Model) carryJoints() {
 // advanceClasses moves one segment's content class by class: each cell loses the same share of every class,
 // so that the composition of what leaves a cell is the composition in it.
 func (m *Model) advanceClasses(s int) {
-	seg := &m.grid.Segments[s]
+	seg := &m.coefs[s]
 	n := seg.of(m.n)
 	share := m.faces(s, n)
 	kernel.Shares(share, share, n)
@@ -128,18 +119,19 @@ func (m *Model) advanceClasses(s int) {
 // vehicles on the link at its beginning: then vehicles at free speed spend exactly the free travel time.
 func (m *Model) tally() {
 	for c := range m.pce {
-		in, out, inside, seconds := m.count.in[c], m.count.out[c], m.count.inside[c], m.count.time[c]
 		from, to, scale := m.in, m.out, 1/m.pce[c]
 		if m.classes != nil {
 			from, to, scale = m.inC[c], m.outC[c], 1
 		}
-		for i := range m.grid.Links {
-			l := &m.grid.Links[i]
-			enters, leaves := from[l.FirstSegment]*scale, to[l.FirstSegment+l.Segments-1]*scale
-			seconds[i] += inside[i] * m.grid.Step
-			in[i] += enters
-			out[i] += leaves
-			inside[i] += enters - leaves
+		counts, first := m.count[c], 0
+		for i := range counts {
+			l, last := &counts[i], m.lastOf[i]
+			enters, leaves := from[first]*scale, to[last]*scale
+			l.seconds += l.inside * m.grid.Step
+			l.in += enters
+			l.out += leaves
+			l.inside += enters - leaves
+			first = last + 1
 		}
 	}
 }

@@ -47,21 +47,21 @@ func (v View) Vehicles(dst []float64, link network.LinkID, class demand.ClassID)
 }
 
 // In is the number of vehicles of a class that entered a link since the start.
-func (v View) In(link network.LinkID, class demand.ClassID) float64 { return v.m.count.in[class][link] }
+func (v View) In(link network.LinkID, class demand.ClassID) float64 { return v.m.count[class][link].in }
 
 // Out is the number of vehicles of a class that left a link since the start.
 func (v View) Out(link network.LinkID, class demand.ClassID) float64 {
-	return v.m.count.out[class][link]
+	return v.m.count[class][link].out
 }
 
 // Inside is the number of vehicles of a class on a link.
 func (v View) Inside(link network.LinkID, class demand.ClassID) float64 {
-	return v.m.count.inside[class][link]
+	return v.m.count[class][link].inside
 }
 
 // Seconds is the time that vehicles of a class have spent on a link since the start, vehicle-seconds.
 func (v View) Seconds(link network.LinkID, class demand.ClassID) float64 {
-	return v.m.count.time[class][link]
+	return v.m.count[class][link].seconds
 }
 
 // Source is the queue outside at an entry, counted since the start, of one class.
