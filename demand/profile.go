@@ -12,6 +12,8 @@ type Profile struct {
 	total        []float64 // total[i] is the number of vehicles from start to start+i*every
 	mid          []float64 // flow at interval mid-points, where ramped; else nil
 	values       []float64 // mean flow of each interval, veh/s
+	clipped      bool      // it is 0 outside [from, to)
+	from, to     float64
 }
 
 // Constant is the same flow (veh/s) at all times.
@@ -72,6 +74,17 @@ func Ramped(start, every float64, values []float64) (Profile, error) {
 	return p, nil
 }
 
+// Between is the profile from one time (s) to another, and 0 outside. Vehicles of neighbouring parts add up to those
+// of the whole, to round-off.
+func (p *Profile) Between(from, to float64) Profile {
+	s := *p
+	if p.clipped {
+		from, to = max(from, p.from), min(to, p.to)
+	}
+	s.clipped, s.from, s.to = true, from, to
+	return s
+}
+
 // End is the time up to which the profile is given, +Inf for a constant one.
 func (p *Profile) End() float64 {
 	if p.every == 0 {
@@ -90,6 +103,12 @@ func (p *Profile) Start() float64 {
 
 // Vehicles is the number of vehicles in [from, to], the exact integral of the flow.
 func (p *Profile) Vehicles(from, to float64) float64 {
+	if p.clipped {
+		from, to = max(from, p.from), min(to, p.to)
+		if from >= to {
+			return 0
+		}
+	}
 	if p.every == 0 {
 		if len(p.values) == 0 {
 			return 0
