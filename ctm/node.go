@@ -307,6 +307,8 @@ func (m *Model) queuedAtEnd(s int) bool {
 	return m.n[m.lastCell(s)] > m.coefs[s].critical*(1+dropBand)
 }
 
+// queuedAtStart reports whether a segment takes less than its capacity. Its density would not do: where a lane is
+// closed, the vehicles that were there stay above the critical density of the lanes left and yet pass at capacity.
 func (m *Model) queuedAtStart(s int) bool {
-	return m.n[m.coefs[s].from] > m.coefs[s].critical*(1+dropBand)
+	return m.first[s] < m.coefs[s].q*(1-dropBand)
 }

@@ -122,10 +122,11 @@ func near(t testing.TB, what string, got, want, share float64) {
 	}
 }
 
-// tail records how far upstream of a place cells are above critical density, along a chain of links. It knows
-// nothing of package observe.
+// tail records how far upstream of a place cells are congested, along a chain of links: above critical density and
+// below capacity. It knows nothing of package observe.
 type tail struct {
 	links  []network.LinkID // upstream to downstream
+	begin  float64          // m from the chain's start; nothing upstream of it is looked at
 	head   float64          // m from the chain's start
 	places []float64        // m upstream of the head, rising
 	reach  []float64        // h, when the tail first was there
@@ -144,7 +145,8 @@ func (o *tail) Observe(v ctm.View) error {
 			for i := range seg.Cells {
 				k := v.Cars()[seg.First+i] / (seg.Dx * road.Lanes)
 				at := x + seg.From + (float64(i)+0.5)*seg.Dx
-				if at < o.head && k > road.Diagram.Critical()*1.01 && farthest < 0 {
+				full := k > road.Diagram.Critical()*1.01 && road.Diagram.Flow(k) < diagram.Capacity(road.Diagram)*0.999
+				if o.begin < at && at < o.head && full && farthest < 0 {
 					farthest = o.head - at + seg.Dx/2
 				}
 			}
