@@ -12,7 +12,7 @@ import (
 type SegmentLimits struct {
 	LanesTaken float64 // lanes closed
 	Speed      float64 // speed limit, m/s; 0 none
-	Capacity   float64 // of each lane left, veh/s; 0 the diagram's
+	Capacity   float64 // of each lane left, what may flow into the segment, veh/s; 0 the diagram's
 	Discharge  float64 // of each lane left while a queue stands before it, veh/s; 0 the capacity less the diagram's drop
 	Share      float64 // share of the capacity lost, 0..1
 	Shut       bool    // nothing may enter the segment; what is in it drains
@@ -43,12 +43,13 @@ func (l *Limits) reset() {
 // Road is what a segment is like at present.
 type Road struct {
 	Lanes   float64
-	Diagram diagram.Diagram // per lane, with the limits in force
-	Drop    float64         // share of capacity lost while a queue discharges into it
+	Diagram diagram.Diagram // per lane, with the speed limit in force
+	// Entry is the largest flow into the segment, all lanes, veh/s: the capacity of the diagram or what a measure
+	// leaves of it. It acts at the upstream end, where a queue then stands; inside the segment traffic flows by
+	// the diagram, so that vehicles which were there when a lane closed drain.
+	Entry float64
+	Drop  float64 // share of Entry lost while a queue discharges into it
 }
-
-// Capacity is the largest flow of all lanes in veh/s.
-func (r *Road) Capacity() float64 { return r.Lanes * diagram.Capacity(r.Diagram) }
 
 // road applies a segment's limits to its link. A segment whose every lane is taken keeps its lanes: it is shut
 // at its upstream end and drains.
@@ -57,21 +58,19 @@ func road(link *network.Link, lim *SegmentLimits) Road {
 	if lim.LanesTaken > 0 && lim.LanesTaken < link.Lanes {
 		r.Lanes -= lim.LanesTaken
 	}
-	speed, capacity := math.Inf(1), math.Inf(1)
-	if lim.Speed > 0 {
-		speed = lim.Speed
+	if lim.Speed > 0 && lim.Speed < link.Diagram.FreeSpeed() {
+		r.Diagram = diagram.Limit(link.Diagram, lim.Speed, math.Inf(1))
 	}
+	perLane := diagram.Capacity(r.Diagram)
 	if lim.Capacity > 0 {
-		capacity = lim.Capacity
+		perLane = min(perLane, lim.Capacity)
 	}
-	if lim.Share > 0 {
-		capacity = min(capacity, (1-lim.Share)*diagram.Capacity(link.Diagram))
-	}
-	if !math.IsInf(speed, 1) || !math.IsInf(capacity, 1) {
-		r.Diagram = diagram.Limit(link.Diagram, speed, capacity)
-	}
+	r.Entry = r.Lanes * min(perLane, (1-lim.Share)*diagram.Capacity(link.Diagram))
 	if lim.Discharge > 0 {
-		r.Drop = max(0, 1-lim.Discharge/diagram.Capacity(r.Diagram))
+		r.Drop = max(0, 1-lim.Discharge*r.Lanes/r.Entry)
+	}
+	if lim.Shut {
+		r.Entry, r.Drop = 0, 0
 	}
 	return r
 }

@@ -126,7 +126,7 @@ func (m *Model) addClasses() {
 type coef struct {
 	from, to int // its cells: from <= i < to
 	linear   bool
-	shut     bool    // nothing may enter
+	entry    float64 // largest flow into the first cell, pc per step
 	narrowed bool    // fewer lanes than the link has: a cell may hold more than fits
 	a, b     float64 // Courant numbers of the free and the congested branch
 	q, nj    float64 // capacity per step, storage per cell
@@ -150,6 +150,7 @@ func newCoef(seg *Segment, r *Road, link *network.Link, step float64) coef {
 		c.a, c.b = min(1, v*step/seg.Dx), min(1, w*step/seg.Dx)
 		c.q, c.nj = q*c.perStep, kj*r.Lanes*seg.Dx
 	}
+	c.entry = min(c.q, r.Entry*step)
 	return c
 }
 
@@ -159,15 +160,12 @@ func (m *Model) ends() {
 		c := &m.coefs[s]
 		first, last := m.n[c.from], m.n[c.to-1]
 		if c.linear {
-			m.first[s], m.last[s] = max(0, min(c.q, c.b*(c.nj-first))), min(c.a*last, c.q)
+			m.first[s], m.last[s] = max(0, min(c.entry, c.b*(c.nj-first))), min(c.a*last, c.q)
 		} else {
 			k, sending, receiving := m.wk.k[:2], m.wk.sending[:2], m.wk.receiving[:2]
 			k[0], k[1] = first*c.perLane, last*c.perLane
 			c.fill(sending, receiving, k)
-			m.first[s], m.last[s] = receiving[0]*c.perStep, min(sending[1]*c.perStep, last)
-		}
-		if c.shut {
-			m.first[s] = 0
+			m.first[s], m.last[s] = min(c.entry, receiving[0]*c.perStep), min(sending[1]*c.perStep, last)
 		}
 	}
 	for _, link := range m.limited {
@@ -190,7 +188,6 @@ func (m *Model) refresh() {
 		link := &m.sc.Network.Links[seg.Link]
 		m.roads[s] = road(link, &m.lim.Segments[s])
 		m.coefs[s] = newCoef(seg, &m.roads[s], link, m.grid.Step)
-		m.coefs[s].shut = m.lim.Segments[s].Shut
 	}
 	m.limited = m.limited[:0]
 	for i, flow := range m.lim.LinkEnd {

@@ -107,7 +107,7 @@ func (m *Model) newNode(id network.NodeID, sources []int) node {
 func (m *Model) refreshNodes() {
 	for i := range m.joints {
 		j := &m.joints[i]
-		j.site.set(m.coefs[j.up].q, m.coefs[j.down].q, max(m.roads[j.up].Drop, m.roads[j.down].Drop))
+		j.site.set(m.coefs[j.up].entry, m.coefs[j.down].entry, max(m.roads[j.up].Drop, m.roads[j.down].Drop))
 	}
 	for i := range m.nodes {
 		nd := &m.nodes[i]
@@ -152,10 +152,10 @@ func (m *Model) refreshTurns() {
 		for col, s := range nd.outs {
 			wanted, drop := 0.0, m.roads[s].Drop
 			for row, up := range nd.ins {
-				wanted += nd.turn[0][row*len(out)+col] * m.coefs[up].q
+				wanted += nd.turn[0][row*len(out)+col] * m.coefs[up].entry
 				drop = max(drop, m.roads[up].Drop)
 			}
-			nd.sites[col].set(wanted, m.coefs[s].q, drop)
+			nd.sites[col].set(wanted, m.coefs[s].entry, drop)
 		}
 	}
 }
@@ -307,8 +307,8 @@ func (m *Model) queuedAtEnd(s int) bool {
 	return m.n[m.lastCell(s)] > m.coefs[s].critical*(1+dropBand)
 }
 
-// queuedAtStart reports whether a segment takes less than its capacity. Its density would not do: where a lane is
-// closed, the vehicles that were there stay above the critical density of the lanes left and yet pass at capacity.
+// queuedAtStart reports whether a segment takes less than what may flow into it. Its density would not do: where
+// a lane is closed, the vehicles that were there are above the critical density of the lanes left and yet drain.
 func (m *Model) queuedAtStart(s int) bool {
-	return m.first[s] < m.coefs[s].q*(1-dropBand)
+	return m.first[s] < m.coefs[s].entry*(1-dropBand)
 }
