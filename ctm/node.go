@@ -216,7 +216,62 @@ func (m *Model) cross() {
 	}
 }
 
+// crossNode finds the flows of one node. The two cases that make up most of a network, a diverge of one class and
+// a merge with room for all, need no junction model.
 func (m *Model) crossNode(nd *node) {
+	switch {
+	case len(nd.in) == 1 && len(nd.ins) == 1 && len(nd.turn) == 1:
+		m.diverge(nd)
+	case len(nd.out) != 1 || len(nd.sources) > 0 || !m.mergeAll(nd):
+		m.solve(nd)
+	}
+	for k, s := range nd.outs {
+		if nd.sites[k].drop > 0 {
+			m.updateSite(nd, k, m.in[s])
+		}
+	}
+	if len(nd.turn) > 1 {
+		m.carryOver(nd)
+	}
+}
+
+// diverge is junction.Diverge written over the segments' flows.
+func (m *Model) diverge(nd *node) {
+	turn := nd.problem.Turn[:len(nd.outs)]
+	flow := m.last[nd.ins[0]]
+	for k, s := range nd.outs {
+		r := nd.sites[k].limit(m.first[s])
+		nd.problem.Receiving[k] = r
+		if r < turn[k]*flow {
+			flow = r / turn[k]
+		}
+	}
+	m.out[nd.ins[0]], nd.in[0] = flow, flow
+	for k, s := range nd.outs {
+		m.in[s] = turn[k] * flow
+	}
+}
+
+// mergeAll lets every approach of a merge send all it wants and says whether there was room for that.
+func (m *Model) mergeAll(nd *node) bool {
+	total, out := 0.0, nd.outs[0]
+	for _, s := range nd.ins {
+		total += m.last[s]
+	}
+	r := nd.sites[0].limit(m.first[out])
+	if total > r {
+		return false
+	}
+	nd.problem.Receiving[0] = r
+	for k, s := range nd.ins {
+		m.out[s], nd.in[k] = m.last[s], m.last[s]
+	}
+	m.in[out] = total
+	return true
+}
+
+// solve finds the flows of any node by its junction model.
+func (m *Model) solve(nd *node) {
 	p := &nd.problem
 	for k, s := range nd.ins {
 		p.Sending[k] = m.last[s]
@@ -240,12 +295,6 @@ func (m *Model) crossNode(nd *node) {
 	}
 	for k, s := range nd.outs {
 		m.in[s] = nd.out[k]
-		if nd.sites[k].drop > 0 {
-			m.updateSite(nd, k)
-		}
-	}
-	if len(nd.turn) > 1 {
-		m.carryOver(nd)
 	}
 }
 
@@ -290,15 +339,15 @@ func (m *Model) carryOver(nd *node) {
 	}
 }
 
-// updateSite looks at a way out of a node after its flows are known.
-func (m *Model) updateSite(nd *node, k int) {
+// updateSite looks at a way out of a node after its flow is known.
+func (m *Model) updateSite(nd *node, k int, flow float64) {
 	queued := false
 	for row, s := range nd.ins {
 		if nd.problem.Turn[row*len(nd.outs)+k] > 0 && m.queuedAtEnd(s) {
 			queued = true
 		}
 	}
-	nd.sites[k].update(queued, m.queuedAtStart(nd.outs[k]), nd.out[k] >= nd.problem.Receiving[k]*(1-1e-6))
+	nd.sites[k].update(queued, m.queuedAtStart(nd.outs[k]), flow >= nd.problem.Receiving[k]*(1-1e-6))
 }
 
 func (m *Model) lastCell(s int) int { return m.coefs[s].to - 1 }
