@@ -115,6 +115,11 @@ func (p *Profile) Vehicles(from, to float64) float64 {
 		}
 		return p.values[0] * (to - from)
 	}
+	if a := (from - p.start) / p.every; p.mid == nil && a >= 0 { // mostly: within one interval
+		if i := int(a); i < len(p.values) && to <= p.start+float64(i+1)*p.every {
+			return p.values[i] * (to - from)
+		}
+	}
 	return p.cumulative(to) - p.cumulative(from)
 }
 
