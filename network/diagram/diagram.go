@@ -1,6 +1,5 @@
 package diagram
 
-
 // Diagram is the relation between flow and density of one lane.
 type Diagram interface {
 	// Flow is the flow in veh/s at k veh/m; 0 where k is outside [0, Jam].

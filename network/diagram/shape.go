@@ -35,7 +35,8 @@ const tolerance = 1e-3
 // Shapes lists the shapes that New knows.
 func Shapes() []Shape {
 	shapes := []Shape{
-		triangular(), trapezoidal(), greenshields(),
+		triangular(), trapezoidal(), greenshields(), greenberg(), underwood(), drake(), pipesMunjal(),
+		newellFranklin(), smulders(), quadraticLinear(), inverseLambda(), delCastillo(), vanAerde(), piecewise(),
 	}
 	for i := range shapes {
 		s := &shapes[i]
