@@ -6,6 +6,7 @@ import (
 
 	"example.org/tailback/ctm"
 	"example.org/tailback/network"
+	"example.org/tailback/network/unit"
 )
 
 // LaneClosure takes lanes away over a stretch of road. Each lane left carries at most Capacity until a queue
@@ -68,10 +69,10 @@ func (c *LaneClosure) Apply(v ctm.View, lim *ctm.Limits) {
 }
 
 // Text describes the closure.
-func (c *LaneClosure) Text(n *network.Network) string {
+func (c *LaneClosure) Text(n *network.Network, sys unit.System) string {
 	var b strings.Builder
 	lanes := n.Links[c.Stretch[0].Link].Lanes
-	fmt.Fprintf(&b, "%g of %g lanes closed %s, %s", c.Lanes, lanes, place(n, c.Stretch), period(c.Start, c.End))
+	fmt.Fprintf(&b, "%g of %g lanes closed %s, %s", c.Lanes, lanes, place(n, c.Stretch, sys), period(c.Start, c.End))
 	if c.Lanes >= lanes {
 		b.WriteString("; nothing enters, what is inside drains")
 		return b.String()
@@ -83,7 +84,7 @@ func (c *LaneClosure) Text(n *network.Network) string {
 		fmt.Fprintf(&b, " before a queue forms and %s out of it", hourly(c.Discharge))
 	}
 	if c.Speed > 0 {
-		fmt.Fprintf(&b, ", at most %s", speed(c.Speed))
+		fmt.Fprintf(&b, ", at most %s", speed(c.Speed, sys))
 	}
 	if c.Source != "" {
 		b.WriteString("; " + c.Source)

@@ -5,6 +5,7 @@ import (
 
 	"example.org/tailback/ctm"
 	"example.org/tailback/network"
+	"example.org/tailback/network/unit"
 )
 
 // Incident takes away a share of a link's capacity at a point, from its beginning until it is cleared. On the grid
@@ -46,22 +47,18 @@ func (c *Incident) Cuts(n *network.Network, cell float64) []ctm.Cut {
 // Times lists the moments at which it begins and ends.
 func (c *Incident) Times() []float64 { return []float64{c.Start, c.End} }
 
-// Apply takes the share of capacity away. With nothing left, nothing enters the stretch.
+// Apply takes the share of capacity away, of each lane that closures leave.
 func (c *Incident) Apply(v ctm.View, lim *ctm.Limits) {
 	if !within(v.Time(), c.Start, c.End) {
 		return
 	}
 	length := v.Grid().Links[c.Link].Length
 	tighten(v, lim, c.span(length, v.Scenario().Horizon.Cell), func(s *ctm.SegmentLimits) {
-		if c.CapacityLeft == 0 {
-			s.Shut = true
-		} else {
-			s.Share = max(s.Share, 1-c.CapacityLeft)
-		}
+		s.Share = max(s.Share, 1-c.CapacityLeft)
 	})
 }
 
 // Text describes the incident.
-func (c *Incident) Text(n *network.Network) string {
-	return fmt.Sprintf("incident at %s of link `%s`, %s: %s of the capacity left", metres(c.At), n.Links[c.Link].Name, period(c.Start, c.End), percent(c.CapacityLeft))
+func (c *Incident) Text(n *network.Network, sys unit.System) string {
+	return fmt.Sprintf("incident at %s of link `%s`, %s: %s of the capacity left", length(c.At, sys), n.Links[c.Link].Name, period(c.Start, c.End), percent(c.CapacityLeft))
 }

@@ -12,6 +12,7 @@ import (
 	"example.org/tailback/demand"
 	"example.org/tailback/network"
 	"example.org/tailback/network/diagram"
+	"example.org/tailback/network/unit"
 )
 
 // counter keeps the vehicles on each link at each moment looked at.
@@ -135,7 +136,7 @@ func TestOverlappingClosures(t *testing.T) {
 			near(t, name+": lanes", r.Lanes, c.lanes, 1e-12)
 			near(t, name+": speed", r.Diagram.FreeSpeed(), c.speed*kmh, 1e-9)
 			// A limit u alone leaves u w kj/(u+w) (design notes, section 7).
-			near(t, name+": capacity", diagram.Capacity(r.Diagram), min(c.capacity, c.speed*20*120/(c.speed+20))*vehh, 1e-9)
+			near(t, name+": capacity", r.Entry/r.Lanes, min(c.capacity, c.speed*20*120/(c.speed+20))*vehh, 1e-9)
 		}
 	}
 }
@@ -276,9 +277,13 @@ func TestTexts(t *testing.T) {
 		{&measure.Meter{Link: 1, Rate: 0.25, End: hour}, "meter at the end of link `L1`, 00:00-01:00: at most 900 veh/h"},
 		{&measure.RampClosure{Link: 1, End: hour}, "link `L1` closed, 00:00-01:00"},
 	} {
-		if got := c.m.Text(sc.Network); got != c.want {
+		if got := c.m.Text(sc.Network, unit.Metric); got != c.want {
 			t.Errorf("got  %s\nwant %s", got, c.want)
 		}
+	}
+	want := "1 of 3 lanes closed from 984 ft to 0.68 mi of link `L0`, 20:00-29:00, 1,550 veh/h per open lane; given in the study"
+	if got := night.Text(sc.Network, unit.US); got != want {
+		t.Errorf("got  %s\nwant %s", got, want)
 	}
 }
 

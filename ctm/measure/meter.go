@@ -6,6 +6,7 @@ import (
 
 	"example.org/tailback/ctm"
 	"example.org/tailback/network"
+	"example.org/tailback/network/unit"
 )
 
 // Meter lets at most a fixed flow out of a link's downstream end, as a ramp meter does. The merge beyond it sees
@@ -38,6 +39,6 @@ func (c *Meter) Apply(v ctm.View, lim *ctm.Limits) {
 }
 
 // Text describes the meter.
-func (c *Meter) Text(n *network.Network) string {
+func (c *Meter) Text(n *network.Network, _ unit.System) string {
 	return fmt.Sprintf("meter at the end of link `%s`, %s: at most %s", n.Links[c.Link].Name, period(c.Start, c.End), hourly(c.Rate))
 }

@@ -5,6 +5,7 @@ import (
 
 	"example.org/tailback/ctm"
 	"example.org/tailback/network"
+	"example.org/tailback/network/unit"
 )
 
 // RampClosure shuts a link at its upstream end: nothing enters, and what is on it drains. Where its traffic goes
@@ -31,6 +32,6 @@ func (c *RampClosure) Apply(v ctm.View, lim *ctm.Limits) {
 }
 
 // Text describes the closure.
-func (c *RampClosure) Text(n *network.Network) string {
+func (c *RampClosure) Text(n *network.Network, _ unit.System) string {
 	return fmt.Sprintf("link `%s` closed, %s", n.Links[c.Link].Name, period(c.Start, c.End))
 }

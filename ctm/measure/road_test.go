@@ -11,6 +11,7 @@ import (
 	"example.org/tailback/demand"
 	"example.org/tailback/network"
 	"example.org/tailback/network/diagram"
+	"example.org/tailback/network/unit"
 )
 
 // Units of the tests: km, h, veh of the hand-worked cases, turned into m, s and veh.
@@ -73,7 +74,7 @@ type described interface {
 	ctm.Measure
 	Check(n *network.Network) error
 	Cuts(n *network.Network, cell float64) []ctm.Cut
-	Text(n *network.Network) string
+	Text(n *network.Network, sys unit.System) string
 }
 
 // with adds measures and their cuts.

@@ -6,6 +6,7 @@ import (
 
 	"example.org/tailback/ctm"
 	"example.org/tailback/network"
+	"example.org/tailback/network/unit"
 )
 
 // SpeedLimit holds links to a speed. A limit u changes a flow-density curve f of any shape to
@@ -53,6 +54,6 @@ func (c *SpeedLimit) Apply(v ctm.View, lim *ctm.Limits) {
 }
 
 // Text describes the limit.
-func (c *SpeedLimit) Text(n *network.Network) string {
-	return fmt.Sprintf("speed limit of %s on %s, %s", speed(c.Limit), names(n, c.Links), period(c.Start, c.End))
+func (c *SpeedLimit) Text(n *network.Network, sys unit.System) string {
+	return fmt.Sprintf("speed limit of %s on %s, %s", speed(c.Limit, sys), names(n, c.Links), period(c.Start, c.End))
 }

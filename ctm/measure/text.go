@@ -7,9 +7,8 @@ import (
 	"strings"
 
 	"example.org/tailback/network"
+	"example.org/tailback/network/unit"
 )
-
-// Reports give these texts in metric units, as the study's grid and tables do.
 
 // metres prints a length: whole metres below a kilometre, else kilometres to the metre.
 func metres(x float64) string {
@@ -17,6 +16,17 @@ func metres(x float64) string {
 		return strconv.FormatFloat(math.Round(x), 'f', -1, 64) + " m"
 	}
 	return strconv.FormatFloat(math.Round(x)/1000, 'f', -1, 64) + " km"
+}
+
+// length prints a length in either system: as metres does, or feet below a quarter of a mile and miles to two decimals.
+func length(x float64, sys unit.System) string {
+	if sys == unit.Metric {
+		return metres(x)
+	}
+	if math.Abs(x) < unit.Mile/4 {
+		return grouped(x/unit.Foot) + " ft"
+	}
+	return strconv.FormatFloat(math.Round(x/unit.Mile*100)/100, 'f', -1, 64) + " mi"
 }
 
 // clock prints s after midnight as HH:MM or HH:MM:SS, running past 24.
@@ -50,8 +60,16 @@ func grouped(x float64) string {
 	return digits
 }
 
-// speed prints a speed in km/h.
-func speed(v float64) string { return number(v*3.6) + " km/h" }
+// speed prints a speed.
+func speed(v float64, sys unit.System) string {
+	if sys == unit.US {
+		return number(v/unit.MilePerHour) + " mph"
+	}
+	return number(v/unit.KilometrePerHour) + " km/h"
+}
+
+// bothSpeeds prints a speed in both systems, where a method's own units are not the study's.
+func bothSpeeds(v float64) string { return speed(v, unit.Metric) + " (" + speed(v, unit.US) + ")" }
 
 // number prints up to four significant digits.
 func number(x float64) string {
@@ -80,7 +98,7 @@ func names(n *network.Network, links []network.LinkID) string {
 }
 
 // place describes consecutive spans: where the first begins and the last ends.
-func place(n *network.Network, spans []Span) string {
+func place(n *network.Network, spans []Span, sys unit.System) string {
 	first, last := &spans[0], &spans[len(spans)-1]
 	end := &n.Links[last.Link]
 	to := min(last.To, end.Length)
@@ -88,8 +106,8 @@ func place(n *network.Network, spans []Span) string {
 		if first.From <= 0 && to >= end.Length {
 			return fmt.Sprintf("the whole of link `%s`", end.Name)
 		}
-		return fmt.Sprintf("from %s to %s of link `%s`", metres(first.From), metres(to), end.Name)
+		return fmt.Sprintf("from %s to %s of link `%s`", length(first.From, sys), length(to, sys), end.Name)
 	}
 	begin := &n.Links[first.Link]
-	return fmt.Sprintf("from %s of link `%s` to %s of link `%s`", metres(first.From), begin.Name, metres(to), end.Name)
+	return fmt.Sprintf("from %s of link `%s` to %s of link `%s`", length(first.From, sys), begin.Name, length(to, sys), end.Name)
 }

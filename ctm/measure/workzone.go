@@ -1,6 +1,10 @@
 package measure
 
-import "fmt"
+import (
+	"fmt"
+
+	"example.org/tailback/network/unit"
+)
 
 // WorkZone holds what the handbook's work-zone method asks for (Highway Capacity Manual, 6th and 7th editions,
 // chapter 10, section 4; NCHRP 03-107; Yeom et al. 2015, Transportation Research Record 2485:51-60). The method
@@ -61,9 +65,9 @@ func HandbookCoefficients() Coefficients {
 
 // Units of the handbook.
 const (
-	foot = 0.3048   // m
-	mile = 1609.344 // m
-	mph  = mile / 3600
+	foot = unit.Foot
+	mile = unit.Mile
+	mph  = unit.MilePerHour
 )
 
 // Estimate is a work zone's capacity and free speed, and how they came about.
@@ -147,9 +151,9 @@ func (w *WorkZone) Estimate() Estimate {
 		e.note("capacity capped at the normal %s per lane", hourly(w.Capacity))
 	}
 	e.note("free speed %s from speed limits of %s (normal) and %s (work zone) and %s ramps per km",
-		speed(e.RawSpeed), speed(normal), speed(limit), number(w.RampDensity*1000))
+		bothSpeeds(e.RawSpeed), bothSpeeds(normal), bothSpeeds(limit), number(w.RampDensity*1000))
 	if e.RawSpeed > w.FreeSpeed {
-		e.note("free speed capped at the normal %s", speed(w.FreeSpeed))
+		e.note("free speed capped at the normal %s", bothSpeeds(w.FreeSpeed))
 	}
 	return e
 }
