@@ -51,12 +51,12 @@ func newDelCastillo(p Params) (Diagram, Params, error) {
 // maxSensitivityCurve is the curve of 1995.
 type maxSensitivityCurve struct {
 	curve
-	a, b float64 // E = exp(a/k - b): a = w kj/vf, b = w/vf
+	a, b float64 // E = exp(a/k - b): a = w kj/vf, b = a/kj
 }
 
 func newMaxSensitivity(p Params) *maxSensitivityCurve {
-	b := p.WaveSpeed / p.FreeSpeed
-	d := &maxSensitivityCurve{curve{vf: p.FreeSpeed, kj: p.JamDensity, down: p.WaveSpeed}, b * p.JamDensity, b}
+	a := p.WaveSpeed * p.JamDensity / p.FreeSpeed
+	d := &maxSensitivityCurve{curve{vf: p.FreeSpeed, kj: p.JamDensity, down: p.WaveSpeed}, a, a / p.JamDensity}
 	d.kc, _ = bisect(0, d.kj, func(k float64) bool {
 		e := math.Exp(d.a/k - d.b)
 		g := math.Exp(1 - e)

@@ -18,7 +18,7 @@ import (
 // wave_speed.
 type newellFranklinCurve struct {
 	curve
-	a, b float64 // E = exp(b - a/k): a = w kj/vf, b = w/vf
+	a, b float64 // E = exp(b - a/k): a = w kj/vf, b = a/kj
 }
 
 func newellFranklin() Shape {
@@ -63,7 +63,8 @@ func newNewellFranklin(p Params) (Diagram, Params, error) {
 	_, z := bisect(r, r+2*math.Sqrt(r)+1, func(z float64) bool { return excess(z) >= r })
 	p.CriticalDensity = r * kj / z
 	p.Capacity = w * kj / (1 + z)
-	return &newellFranklinCurve{curve{vf, p.Capacity, p.CriticalDensity, kj, w}, r * kj, r}, p, nil
+	a := r * kj
+	return &newellFranklinCurve{curve{vf, p.Capacity, p.CriticalDensity, kj, w}, a, a / kj}, p, nil
 }
 
 // Flow implements Diagram.

@@ -93,13 +93,17 @@ func (d *piecewiseCurve) Flow(k float64) float64 {
 	return d.at(k)
 }
 
-// at looks for the line from the first one: there are few.
+// at looks for the line from the first one: there are few. The first is taken from its beginning and the others from
+// their end, so that the flow is 0 at both ends of the road's densities.
 func (d *piecewiseCurve) at(k float64) float64 {
 	i := 0
-	for i < len(d.slopes)-1 && k >= d.ks[i+1] {
+	for i < len(d.slopes)-1 && k > d.ks[i+1] {
 		i++
 	}
-	return d.qs[i] + d.slopes[i]*(k-d.ks[i])
+	if i == 0 {
+		return d.vf * k
+	}
+	return d.qs[i+1] + d.slopes[i]*(k-d.ks[i+1])
 }
 
 // Fill implements Filler.

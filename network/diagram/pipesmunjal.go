@@ -15,7 +15,7 @@ import (
 // speed. It needs free_speed, jam_density and exponent.
 type pipesMunjalCurve struct {
 	curve
-	n, perJam float64
+	n float64
 }
 
 // leastExponent and mostExponent bound the exponents that are accepted and solved for.
@@ -76,7 +76,7 @@ func newPipesMunjal(p Params) (Diagram, Params, error) {
 	p.Capacity = p.FreeSpeed * p.CriticalDensity * n / (1 + n)
 	p.WaveSpeed = n * p.FreeSpeed
 	c := curve{p.FreeSpeed, p.Capacity, p.CriticalDensity, p.JamDensity, p.WaveSpeed}
-	return &pipesMunjalCurve{c, n, 1 / p.JamDensity}, p, nil
+	return &pipesMunjalCurve{c, n}, p, nil
 }
 
 // Flow implements Diagram.
@@ -89,7 +89,7 @@ func (d *pipesMunjalCurve) Flow(k float64) float64 {
 
 // at takes the power by way of the logarithm, at a third of math.Pow's cost.
 func (d *pipesMunjalCurve) at(k float64) float64 {
-	return d.vf * k * (1 - math.Exp(d.n*math.Log(k*d.perJam)))
+	return d.vf * k * (1 - math.Exp(d.n*math.Log(k/d.kj)))
 }
 
 // Fill implements Filler.

@@ -13,7 +13,7 @@ import (
 //	dq/dk at kj = -1/(kj (c2/vf^2 + c3))
 //
 // with vc = Q/kc, vf/2 <= vc < vf and c3 > 0. Solved for the speed, with b = 1 + k (c3 vf - c1) and
-// c = vf - k (c1 vf + c2), the root that loses no digits at small k is
+// c = vf (1 - k/kj), the root that loses no digits at small k is
 //
 //	v = 2 c/(b + sqrt(b^2 - 4 c3 k c))
 //
@@ -21,7 +21,7 @@ import (
 // critical_density and jam_density.
 type vanAerdeCurve struct {
 	curve
-	b, c, c3 float64 // b = c3 vf - c1, c = c1 vf + c2
+	c3, rise float64 // rise = c3 vf - c1
 }
 
 func vanAerde() Shape {
@@ -53,7 +53,7 @@ func newVanAerde(p Params) (Diagram, Params, error) {
 		return nil, p, fmt.Errorf("jam_density is %s: with the other parameters it must be above %s", say(jamDensity, kj), say(jamDensity, least))
 	}
 	p.WaveSpeed = 1 / (kj * (c2/(vf*vf) + c3))
-	return &vanAerdeCurve{curve{vf, q, kc, kj, p.WaveSpeed}, c3*vf - c1, c1*vf + c2, c3}, p, nil
+	return &vanAerdeCurve{curve{vf, q, kc, kj, p.WaveSpeed}, c3, c3*vf - c1}, p, nil
 }
 
 // Flow implements Diagram.
@@ -65,7 +65,7 @@ func (d *vanAerdeCurve) Flow(k float64) float64 {
 }
 
 func (d *vanAerdeCurve) at(k float64) float64 {
-	b, c := 1+k*d.b, d.vf-k*d.c
+	b, c := 1+k*d.rise, d.vf*(1-k/d.kj)
 	return k * 2 * c / (b + math.Sqrt(b*b-4*d.c3*k*c))
 }
 
