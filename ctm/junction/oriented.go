@@ -24,6 +24,11 @@ func (o *Oriented) Flows(in, out []float64, p *Problem) {
 	case n == 1:
 		in[0] = Diverge(out, p.Sending[0], p.Receiving, p.Turn)
 	default:
+		copy(in, p.Sending)
+		p.rows(nil, out, in)
+		if p.fits(out) { // the usual case: nobody is held back
+			return
+		}
 		o.solve(in, p)
 		p.rows(nil, out, in)
 	}

@@ -84,6 +84,16 @@ func (p *Problem) rows(q, out, in []float64) {
 	}
 }
 
+// fits reports whether every way out takes what is bound for it.
+func (p *Problem) fits(out []float64) bool {
+	for j, flow := range out {
+		if !(flow <= p.Receiving[j]) {
+			return false
+		}
+	}
+	return true
+}
+
 // trim takes off what rounding put above the receiving flow.
 func trim(out, receiving []float64) {
 	for j, r := range receiving {
