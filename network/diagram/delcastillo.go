@@ -113,7 +113,11 @@ func (d *negativePowerCurve) Flow(k float64) float64 {
 func (d *negativePowerCurve) at(k float64) float64 {
 	free, jammed := d.vf*k, max(0, d.down*(d.kj-k))
 	low, high := min(free, jammed), max(free, jammed)
-	return low * math.Exp(-d.inverse*math.Log1p(math.Exp(d.n*math.Log(low/high))))
+	power := d.n * math.Log(low/high)
+	if power < -37 { // exp(-37) < 2^-53: it is lost in 1 + exp(power)
+		return low
+	}
+	return low * math.Exp(-d.inverse*math.Log(1+math.Exp(power)))
 }
 
 // Fill implements Filler.

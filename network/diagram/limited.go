@@ -24,6 +24,9 @@ func Limit(d Diagram, speed, capacity float64) Diagram {
 	if !(speed >= 0) || !(capacity >= 0) {
 		panic("diagram: a limit must not be negative or NaN")
 	}
+	if speed >= d.FreeSpeed() && capacity >= Capacity(d) {
+		return d
+	}
 	switch base := d.(type) {
 	case linear:
 		v := min(base.v, speed)
@@ -33,9 +36,6 @@ func Limit(d Diagram, speed, capacity float64) Diagram {
 		return linear{v, min(base.q, capacity, tip(v, base.w, base.kj)), base.w, base.kj}
 	case *Limited:
 		return Limit(base.base, min(base.speed, speed), min(base.flow, capacity))
-	}
-	if speed >= d.FreeSpeed() && capacity >= Capacity(d) {
-		return d
 	}
 	l := &Limited{base: d, speed: speed, flow: capacity}
 	l.curve = curve{vf: min(d.FreeSpeed(), speed), kj: d.Jam(), down: d.MaxWaveSpeed()}
