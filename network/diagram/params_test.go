@@ -128,6 +128,7 @@ func TestErrors(t *testing.T) {
 		{"triangular", diagram.Params{}, "shape `triangular`: nothing is given: give one of (free_speed, capacity, jam_density) (free_speed, capacity, wave_speed) (free_speed, jam_density, wave_speed)"},
 		{"triangular", params(100, 2000, 0, 0, 0, 0), "free_speed, capacity alone cannot determine it: give one of ("},
 		{"triangular", params(100, 2000, 0, 120, 25, 0), "wave_speed is 25 km/h but follows as 20 km/h from free_speed, capacity, jam_density: give only one of ("},
+		{"triangular", params(100, 2000, 0, 120, 20.1, 0), "wave_speed is 20.1 km/h but follows as 20 km/h"},
 		{"triangular", params(100, 2000, 25, 120, 0, 0), "critical_density is 25 veh/km/lane but follows as 20 veh/km/lane"},
 		{"triangular", params(10, 2000, 0, 120, 0, 0), "the capacity is reached at 200 veh/km/lane, which is not below the jam_density of 120 veh/km/lane"},
 		{"triangular", params(-100, 2000, 0, 120, 0, 0), "free_speed is -27.77"},
@@ -232,6 +233,8 @@ func TestOverride(t *testing.T) {
 		{"jam density", "greenshields", params(100, 0, 0, 120, 0, 0), params(0, 2000, 0, 0, 0, 0), params(100, 2000, 0, 0, 0, 0), 40, 2000},
 		{"exponent", "pipes-munjal", params(100, 0, 0, 120, 0, 2), params(0, 3000, 0, 0, 0, 0), params(100, 3000, 0, 120, 0, 0), 60, 3000},
 		{"exponent before jam", "del-castillo", params(100, 0, 0, 120, 20, 2), params(0, 1816.07289, 0, 0, 0, 0), params(100, 1816.07289, 0, 120, 20, 0), 24.8775689, 1816.07289},
+		// without capacity alone the rest agrees; without wave_speed and critical_density it would too
+		{"the fewest", "triangular", params(90, 1800, 20, 120, 20, 0), params(100, 0, 0, 0, 0, 0), params(100, 0, 20, 120, 20, 0), 20, 2000},
 		{"trapezoid", "trapezoidal", params(100, 1800, 0, 120, 20, 0), params(90, 1700, 0, 0, 0, 0), params(90, 1700, 0, 120, 20, 0), 1700.0 / 90, 1700},
 		{"points", "piecewise", p{Points: [][2]float64{{0, 0}, {0.02, 0.5}, {0.12, 0}}}, p{Points: [][2]float64{{0, 0}, {0.025, 0.5}, {0.12, 0}}}, p{Points: [][2]float64{{0, 0}, {0.025, 0.5}, {0.12, 0}}}, 25, 1800},
 	} {

@@ -57,10 +57,10 @@ func newSmulders(p Params) (Diagram, Params, error) {
 	if kb >= kj {
 		return nil, p, belowJam(p)
 	}
-	p.WaveSpeed = vf * kb / kj
+	p.WaveSpeed = vf * kb / kj // the parabola's steepest fall, vf (2 kb/kj - 1), is less
 	kc := min(kb, kj/2)
 	p.Capacity = vf * kc * (1 - kc/kj)
-	return &smuldersCurve{curve{vf, p.Capacity, kc, kj, max(p.WaveSpeed, vf*(2*kb/kj-1))}, kb}, p, nil
+	return &smuldersCurve{curve{vf, p.Capacity, kc, kj, p.WaveSpeed}, kb}, p, nil
 }
 
 // belowJam is the error for a critical density that is not below the jam density.
