@@ -174,6 +174,7 @@ func TestGreenbergPublished(t *testing.T) {
 	near(t, "exam capacity", diagram.Capacity(d), 1740*vehh, 1e-6)
 	d = build(t, "greenberg", params(100, 1740, 0, 78.83017, 0, 0))
 	near(t, "exam critical density", d.Critical(), 29*vkm, 1e-6)
+	near(t, "exam capacity again", diagram.Capacity(d), 1740*vehh, 1e-6)
 }
 
 // What leaves a queue of an inverse-lambda road is the flow at which the branches meet: k2 = 20*120/120 = 20, 2000
