@@ -6,7 +6,7 @@ import (
 	"testing"
 )
 
-// crowded makes a node where about half the approaches are held back.
+// crowded makes a node whose last way out is too small.
 func crowded(n, m int) *Problem {
 	r := rand.New(rand.NewPCG(1, 2))
 	p := &Problem{}
@@ -25,8 +25,9 @@ func crowded(n, m int) *Problem {
 		}
 	}
 	for range m {
-		p.Receiving = append(p.Receiving, total/float64(m)*(.6+.8*r.Float64()))
+		p.Receiving = append(p.Receiving, total/float64(m)*(.8+.8*r.Float64()))
 	}
+	p.Receiving[m-1] = total / float64(m) * .5
 	return p
 }
 
