@@ -170,8 +170,11 @@ func (d *altDraft) named(t *altTable, key, name string) network.LinkID {
 	if l, ok := d.road.Link(name); ok {
 		return l
 	}
-	hint := ""
-	if near := nearestLink(d.road, name); near != "" {
+	hint, all := "", make([]string, len(d.road.Links))
+	for i := range all {
+		all[i] = d.road.Links[i].Name
+	}
+	if near := nearest(name, all); near != "" {
 		hint = "did you mean `" + near + "`?"
 	}
 	t.fault(key, hint, "the network has no link `%s`", name)
@@ -246,12 +249,12 @@ func (d *altDraft) meter(t *altTable) {
 	d.add(t, m)
 }
 
-// nearestLink is the link whose name is spelled most like a word, "" where none is near.
-func nearestLink(n *network.Network, word string) string {
+// nearest is the name that is spelled most like a word, "" where none is near.
+func nearest(word string, names []string) string {
 	best, least := "", len(word)/2+1
-	for i := range n.Links {
-		if x := spelling(word, n.Links[i].Name); x < least {
-			best, least = n.Links[i].Name, x
+	for _, name := range names {
+		if x := spelling(word, name); x < least {
+			best, least = name, x
 		}
 	}
 	return best

@@ -31,7 +31,8 @@ func TestFaultsOfAlternatives(t *testing.T) {
 		{`lane_closure = [{ links = ["E3"], lanes = 1, capacity = "1500 veh/h" }]`, "alternative[0].lane_closure[0].capacity: `capacity`: `1500 veh/h` is no flow per lane: use veh/h/lane"},
 		{`lane_closure = [{ links = ["E3"], lanes = 1, capacity = "0 veh/h/lane" }]`, "alternative[0].lane_closure[0].capacity: `capacity` must be above 0 (to stop all traffic, take all lanes)"},
 		{`lane_closure = [{ links = ["E3"], lanes = 1, capacity = "1400 veh/h/lane", discharge = "1500 veh/h/lane" }]`, "alternative[0].lane_closure[0].discharge: 1500 veh/h/lane out of the queue is more than the capacity of 1400 veh/h/lane (a queue discharges at most what the lanes carried before it formed)"},
-		{`lane_closure = [{ links = ["E3"], lanes = 1, colour = "red" }]`, "alternative[0].lane_closure[0].colour: unknown key `colour`"},
+		{`lane_closure = [{ links = ["E3"], lanes = 1, colour = "red" }]`, "alternative[0].lane_closure[0].colour: unknown key `colour` (known here are `links`, `from`, `to`, `lanes`, `start`, `end`, `capacity`, `discharge`, `source`, `work_zone`, `speed_limit`)"},
+		{`lane_closure = [{ links = ["E3"], lanes = 1, capacty = "red" }]`, "alternative[0].lane_closure[0].capacty: unknown key `capacty` (did you mean `capacity`?)"},
 		{`lane_closure = 3`, "alternative[0].lane_closure: `lane_closure` must be a list of tables"},
 		// Work zones.
 		{`lane_closure = [{ links = ["E3"], lanes = 1, work_zone = { barrier = "rubber" } }]`, "alternative[0].lane_closure[0].work_zone.barrier: `barrier` is `rubber`: it must be `soft` or `hard`"},
@@ -41,7 +42,7 @@ func TestFaultsOfAlternatives(t *testing.T) {
 		{`lane_closure = [{ links = ["X2"], lanes = 0.5, work_zone = { method = "rule", term = "long" } }]`, "alternative[0].lane_closure[0].work_zone.term: the table of long-term works has no row for 1 lanes to 0.5: it has 2 to 1, 3 to 1, 3 to 2, 4 to 1, 4 to 2, 4 to 3 (use term = \"short\", or give capacity)"},
 		{`lane_closure = [{ links = ["E3"], lanes = 1, work_zone = { alpha = "100 %" } }]`, "alternative[0].lane_closure[0].work_zone.alpha: a drop of 1 is not below 1"},
 		{`lane_closure = [{ links = ["E3"], lanes = 1, work_zone = { method = "rule", intensity = 400 } }]`, "alternative[0].lane_closure[0].work_zone.intensity: an intensity of 400 pc/h per lane is outside the rule: -160 to 160"},
-		{`lane_closure = [{ links = ["E3"], lanes = 1, work_zone = { coefficients = { bias = 1 } } }]`, "alternative[0].lane_closure[0].work_zone.coefficients.bias: unknown key `bias`"},
+		{`lane_closure = [{ links = ["E3"], lanes = 1, work_zone = { coefficients = { bias = 1 } } }]`, "alternative[0].lane_closure[0].work_zone.coefficients.bias: unknown key `bias` (did you mean `base`?)"},
 		// Ramp closures.
 		{`ramp_closure = [{ link = "R9" }]`, "alternative[0].ramp_closure[0].link: the network has no link `R9` (did you mean `R2`?)"},
 		{`ramp_closure = [{}]`, "alternative[0].ramp_closure[0].link: `link` must name a link"},
@@ -68,7 +69,7 @@ func TestFaultsOfAlternatives(t *testing.T) {
 		{`diagram_change = [{ diagram = "motorway", shape = "greenshields" }]`, "alternative[0].diagram_change[0].diagram: the study has no [diagram.motorway] (the study has `default`, `freeway`, `ramp`)"},
 		{`diagram_change = [{ shape = "greenshields" }]`, "alternative[0].diagram_change[0].diagram: `diagram` must name a diagram of the study"},
 		{`diagram_change = [{ diagram = "freeway", shape = "square" }]`, "alternative[0].diagram_change[0].shape: link `E1`: unknown shape `square`"},
-		{`closure = [{}]`, "alternative[0].closure: unknown key `closure`"},
+		{`closure = [{}]`, "alternative[0].closure: unknown key `closure` (known here are `name`, `title`, `lane_closure`, `ramp_closure`, `incident`, `speed_limit`, `demand_change`, `meter`, `diagram_change`)"},
 	} {
 		_, faults, _ := read(t, corridor(t), "[[alternative]]\nname = \"a\"\n"+c.text)
 		found := false

@@ -2,6 +2,7 @@ package studyfile
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"example.org/tailback/network/unit"
@@ -28,13 +29,18 @@ func (t *altTable) at(key string) string {
 	return t.path + "." + key
 }
 
-// known reports every key that is not in a list of words.
+// known reports every key that is not in a list of words, and the word that is spelled most like it.
 func (t *altTable) known(words string) {
 	list := strings.Fields(words)
 	for key := range t.keys {
-		if !strings.Contains(" "+words+" ", " "+key+" ") {
-			t.fault(key, "known here are `"+strings.Join(list, "`, `")+"`", "unknown key `%s`", key)
+		if slices.Contains(list, key) {
+			continue
 		}
+		hint := "known here are `" + strings.Join(list, "`, `") + "`"
+		if near := nearest(key, list); near != "" {
+			hint = "did you mean `" + near + "`?"
+		}
+		t.fault(key, hint, "unknown key `%s`", key)
 	}
 }
 
