@@ -4,6 +4,7 @@ import (
 	"example.org/tailback/ctm"
 	"example.org/tailback/demand"
 	"example.org/tailback/network"
+	"example.org/tailback/network/diagram"
 )
 
 // Run is a stretch of one link whose cells are all queued, as long as it goes.
@@ -16,6 +17,7 @@ type Run struct {
 	First    int     // its cells, numbers of the grid
 	Last     int
 	Vehicles float64 // in the stretch, all classes
+	Held     float64 // vehicles x (1 - speed / the link's free speed): vehicle-seconds of delay per second
 }
 
 // Length is the stretch's length in metres.
@@ -80,9 +82,17 @@ func (f *Finder) add(v ctm.View, link network.LinkID, first, last int) {
 		v.Vehicles(f.veh, link, demand.ClassID(c))
 		for i := first; i <= last; i++ {
 			r.Vehicles += f.veh[i-l.First]
+			r.Held += f.veh[i-l.First] * f.slow(v, link, i)
 		}
 	}
 	f.runs = append(f.runs, r)
+}
+
+// slow is the share of its time that a vehicle in a cell loses against the link's own free speed.
+func (f *Finder) slow(v ctm.View, link network.LinkID, cell int) float64 {
+	s := segmentOf(v.Grid(), link, cell)
+	free := v.Scenario().Network.Links[link].Diagram.FreeSpeed()
+	return max(0, 1-diagram.Speed(v.Road(s).Diagram, density(v, s, cell))/free)
 }
 
 // cellEnds are the positions of a cell's ends in metres from its link's start.
