@@ -12,7 +12,7 @@ import (
 )
 
 // laneClosure reads one [[alternative.lane_closure]].
-func (d *altDraft) laneClosure(t *altTable) {
+func (d *altDraft) laneClosure(t *table) {
 	t.known("links from to lanes start end capacity discharge source work_zone speed_limit")
 	links, w := d.links(t, "links"), d.window(t)
 	c := &measure.LaneClosure{
@@ -44,7 +44,7 @@ func (d *altDraft) laneClosure(t *altTable) {
 }
 
 // chain makes sure that links follow each other.
-func (d *altDraft) chain(t *altTable, links []network.LinkID) {
+func (d *altDraft) chain(t *table, links []network.LinkID) {
 	c := network.Corridor{Name: "closure", Links: links}
 	if err := c.Check(d.road); err != nil {
 		t.fault("links", "give the links from upstream to downstream, or one closure for each road", "%s", strings.Replace(err.Error(), "corridor `closure`", "the closure", 1))
@@ -52,7 +52,7 @@ func (d *altDraft) chain(t *altTable, links []network.LinkID) {
 }
 
 // stretch lays from and to, which count from the start of the first link, on the links.
-func (d *altDraft) stretch(t *altTable, links []network.LinkID) []measure.Span {
+func (d *altDraft) stretch(t *table, links []network.LinkID) []measure.Span {
 	total := 0.0
 	for _, l := range links {
 		total += d.road.Links[l].Length
@@ -87,7 +87,7 @@ func (d *altDraft) stretch(t *altTable, links []network.LinkID) []measure.Span {
 }
 
 // lanes checks the lanes taken against every link of the stretch.
-func (d *altDraft) lanes(t *altTable, c *measure.LaneClosure) {
+func (d *altDraft) lanes(t *table, c *measure.LaneClosure) {
 	if !(c.Lanes > 0) {
 		t.fault("lanes", "", "`lanes` must say how many lanes are taken, more than 0")
 	}

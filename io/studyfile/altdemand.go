@@ -13,7 +13,7 @@ import (
 )
 
 // demandChange reads one [[alternative.demand_change]].
-func (d *altDraft) demandChange(t *altTable) {
+func (d *altDraft) demandChange(t *table) {
 	t.known("entries factor start end")
 	var entries []network.LinkID
 	if t.has("entries") {
@@ -43,7 +43,7 @@ func (d *altDraft) demandChange(t *altTable) {
 }
 
 // entry makes sure that traffic begins on a link.
-func (d *altDraft) entry(t *altTable, key string, l network.LinkID) bool {
+func (d *altDraft) entry(t *table, key string, l network.LinkID) bool {
 	entries := d.base.Demand.EntryLinks()
 	if slices.Contains(entries, l) {
 		return true
@@ -68,7 +68,7 @@ func (d *altDraft) names(links []network.LinkID) string {
 
 // rampClosure reads the closure of one [[alternative.ramp_closure]]; divert reads where its traffic goes, once all
 // closures are known.
-func (d *altDraft) rampClosure(t *altTable) {
+func (d *altDraft) rampClosure(t *table) {
 	t.known("link start end divert")
 	link, w := d.link(t, "link"), d.window(t)
 	for _, o := range d.shut {
@@ -84,7 +84,7 @@ func (d *altDraft) rampClosure(t *altTable) {
 
 // divert moves a closed ramp's traffic. Traffic that begins on the ramp goes to other entries, traffic that arrives by
 // road to other exits.
-func (d *altDraft) divert(t *altTable, link network.LinkID, w demand.Window) {
+func (d *altDraft) divert(t *table, link network.LinkID, w demand.Window) {
 	to := d.shares(t, link, w)
 	begins := slices.Contains(d.base.Demand.EntryLinks(), link)
 	if begins {
@@ -126,7 +126,7 @@ func (d *altDraft) turnsInto(link network.LinkID) bool {
 }
 
 // shares reads divert.
-func (d *altDraft) shares(t *altTable, link network.LinkID, w demand.Window) []demand.Share {
+func (d *altDraft) shares(t *table, link network.LinkID, w demand.Window) []demand.Share {
 	var list []demand.Share
 	sum := 0.0
 	for _, s := range t.tables("divert") {

@@ -14,9 +14,9 @@ import (
 // diagramChange reads one [[alternative.diagram_change]]: every link with the named diagram gets the new shape. Its
 // parameters are those given here, then the link's own, then as many of the old diagram's as the new shape has room
 // for, free speed and capacity first. Ids of nodes and links stay as they are.
-func (d *altDraft) diagramChange(t *altTable) {
-	t.known("diagram shape free_speed capacity jam_density wave_speed critical_density exponent points discharge_drop")
-	name, shape, over := t.text("diagram"), t.text("shape"), d.params(t)
+func (d *altDraft) diagramChange(t *table) {
+	t.known("diagram " + diagramKeys)
+	name, shape, over := t.text("diagram"), t.text("shape"), t.params()
 	drop := t.quantity("discharge_drop", unit.Share, -1)
 	if name == "" && !t.bad {
 		t.fault("diagram", "", "`diagram` must name a diagram of the study")
@@ -63,7 +63,7 @@ func (d *altDraft) diagramChange(t *altTable) {
 }
 
 // diagramWords lists what a diagram change gives, in the study's words.
-func diagramWords(shape string, t *altTable) string {
+func diagramWords(shape string, t *table) string {
 	var list []string
 	if shape != "" {
 		list = append(list, "shape "+shape)
@@ -74,27 +74,6 @@ func diagramWords(shape string, t *altTable) string {
 		}
 	}
 	return strings.Join(list, ", ")
-}
-
-// params reads the parameters of a shape.
-func (d *altDraft) params(t *altTable) diagram.Params {
-	p := diagram.Params{
-		FreeSpeed: t.quantity("free_speed", unit.Speed, 0), Capacity: t.quantity("capacity", unit.FlowPerLane, 0),
-		JamDensity: t.quantity("jam_density", unit.DensityPerLane, 0), WaveSpeed: t.quantity("wave_speed", unit.Speed, 0),
-		CriticalDensity: t.quantity("critical_density", unit.DensityPerLane, 0), Exponent: t.number("exponent", 0),
-	}
-	list, _ := t.keys["points"].([]any)
-	for _, x := range list {
-		pair, _ := x.([]any)
-		if len(pair) != 2 {
-			t.fault("points", "", "`points` must hold pairs [density in veh/km/lane, flow in veh/h/lane]")
-			return p
-		}
-		k := (&altTable{path: t.path, keys: map[string]any{"points": pair[0]}, report: t.report}).number("points", 0)
-		q := (&altTable{path: t.path, keys: map[string]any{"points": pair[1]}, report: t.report}).number("points", 0)
-		p.Points = append(p.Points, [2]float64{k * unit.VehPerKilometre, q * unit.VehPerHour})
-	}
-	return p
 }
 
 // diagramOf is the name of a link's diagram: its own, else its kind where the study has a diagram of that name, else

@@ -54,7 +54,7 @@ type altDraft struct {
 
 // occupied remembers what happens to a link when, for checks of measures against each other.
 type occupied struct {
-	table  *altTable
+	table  *table
 	link   network.LinkID
 	window demand.Window
 }
@@ -65,7 +65,7 @@ func sameTime(a, b demand.Window) bool { return a.From < b.To && b.From < a.To }
 // alternatives reads every [[alternative]] and adds the cuts of all measures to the base, so that the base and every
 // alternative stand on one grid. Faults and warnings go to report and warn with the path of the key.
 func alternatives(base *ctm.Scenario, tables []map[string]any, diagrams []string, report, warn func(path, text, hint string)) []Alternative {
-	root := &altTable{keys: map[string]any{"alternative": tables}, report: func(path, text, hint string) { report(path[1:], text, hint) }}
+	root := &table{keys: map[string]any{"alternative": tables}, report: func(path, text, hint string) { report(path[1:], text, hint) }}
 	names := map[string]bool{"base": true}
 	var list []Alternative
 	for _, t := range root.tables("alternative") {
@@ -83,7 +83,7 @@ func alternatives(base *ctm.Scenario, tables []map[string]any, diagrams []string
 }
 
 // read reads one alternative: first what changes the road, then the demand, then the measures.
-func (d *altDraft) read(t *altTable, names map[string]bool) {
+func (d *altDraft) read(t *table, names map[string]bool) {
 	t.known("name title lane_closure ramp_closure incident speed_limit demand_change meter diagram_change")
 	d.name(t, names)
 	d.each(t, "diagram_change", d.diagramChange)
@@ -102,14 +102,14 @@ func (d *altDraft) read(t *altTable, names map[string]bool) {
 	d.alt.Scenario, d.alt.Moved = &sc, d.demand.Record()
 }
 
-func (d *altDraft) each(t *altTable, key string, read func(*altTable)) {
+func (d *altDraft) each(t *table, key string, read func(*table)) {
 	for _, s := range t.tables(key) {
 		read(s)
 	}
 }
 
 // name reads name and title. The name is that of a folder of results too.
-func (d *altDraft) name(t *altTable, names map[string]bool) {
+func (d *altDraft) name(t *table, names map[string]bool) {
 	name := t.text("name")
 	d.alt.Name, d.alt.Title = name, t.text("title")
 	switch {
@@ -124,7 +124,7 @@ func (d *altDraft) name(t *altTable, names map[string]bool) {
 }
 
 // window reads start and end, by default the study's. A window outside the study's period is a warning.
-func (d *altDraft) window(t *altTable) demand.Window {
+func (d *altDraft) window(t *table) demand.Window {
 	w := demand.Window{From: t.clock("start", d.period.From), To: t.clock("end", d.period.To)}
 	switch {
 	case t.bad:
@@ -140,7 +140,7 @@ func (d *altDraft) window(t *altTable) demand.Window {
 func altClock(t float64) string { return strings.TrimSuffix(unit.Clock(t), ":00") }
 
 // link reads the name of a link; -1 after a fault.
-func (d *altDraft) link(t *altTable, key string) network.LinkID {
+func (d *altDraft) link(t *table, key string) network.LinkID {
 	name := t.text(key)
 	if name == "" {
 		if !t.bad {
@@ -152,7 +152,7 @@ func (d *altDraft) link(t *altTable, key string) network.LinkID {
 }
 
 // links reads a list of links.
-func (d *altDraft) links(t *altTable, key string) []network.LinkID {
+func (d *altDraft) links(t *table, key string) []network.LinkID {
 	var list []network.LinkID
 	for _, name := range t.texts(key) {
 		if l := d.named(t, key, name); l >= 0 {
@@ -166,7 +166,7 @@ func (d *altDraft) links(t *altTable, key string) []network.LinkID {
 }
 
 // named finds a link by its name; -1 after a fault.
-func (d *altDraft) named(t *altTable, key, name string) network.LinkID {
+func (d *altDraft) named(t *table, key, name string) network.LinkID {
 	if l, ok := d.road.Link(name); ok {
 		return l
 	}
@@ -182,7 +182,7 @@ func (d *altDraft) named(t *altTable, key, name string) network.LinkID {
 }
 
 // add takes a measure in, unless something is wrong with it.
-func (d *altDraft) add(t *altTable, m altMeasure) {
+func (d *altDraft) add(t *table, m altMeasure) {
 	if t.bad {
 		return
 	}
@@ -199,7 +199,7 @@ func (d *altDraft) add(t *altTable, m altMeasure) {
 func (d *altDraft) say(text func(unit.System) string) { d.alt.texts = append(d.alt.texts, text) }
 
 // incident reads one [[alternative.incident]].
-func (d *altDraft) incident(t *altTable) {
+func (d *altDraft) incident(t *table) {
 	t.known("link at capacity_left start end")
 	link, w := d.link(t, "link"), d.window(t)
 	m := &measure.Incident{Link: link, At: t.quantity("at", unit.Length, 0), CapacityLeft: d.left(t), Start: w.From, End: w.To}
@@ -210,7 +210,7 @@ func (d *altDraft) incident(t *altTable) {
 }
 
 // left reads an incident's capacity_left.
-func (d *altDraft) left(t *altTable) float64 {
+func (d *altDraft) left(t *table) float64 {
 	left := t.quantity("capacity_left", unit.Share, 0)
 	switch {
 	case !t.has("capacity_left"):
@@ -222,7 +222,7 @@ func (d *altDraft) left(t *altTable) float64 {
 }
 
 // speedLimit reads one [[alternative.speed_limit]].
-func (d *altDraft) speedLimit(t *altTable) {
+func (d *altDraft) speedLimit(t *table) {
 	t.known("links limit start end")
 	links, w := d.links(t, "links"), d.window(t)
 	m := &measure.SpeedLimit{Links: links, Limit: t.quantity("limit", unit.Speed, 0), Start: w.From, End: w.To}
@@ -233,7 +233,7 @@ func (d *altDraft) speedLimit(t *altTable) {
 }
 
 // meter reads one [[alternative.meter]] of a fixed rate.
-func (d *altDraft) meter(t *altTable) {
+func (d *altDraft) meter(t *table) {
 	t.known("link rate start end")
 	link, w := d.link(t, "link"), d.window(t)
 	m := &measure.Meter{Link: link, Rate: t.quantity("rate", unit.Flow, 0), Start: w.From, End: w.To}

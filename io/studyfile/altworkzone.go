@@ -13,7 +13,7 @@ import (
 
 // workZone takes a closure's capacity, discharge and free speed from the work zone's description, where the closure
 // itself does not give them.
-func (d *altDraft) workZone(closure, t *altTable, c *measure.LaneClosure) {
+func (d *altDraft) workZone(closure, t *table, c *measure.LaneClosure) {
 	link := &d.road.Links[c.Stretch[0].Link]
 	for _, s := range c.Stretch[1:] { // the tightest link counts
 		if l := &d.road.Links[s.Link]; l.Lanes < link.Lanes {
@@ -80,7 +80,7 @@ func (d *altDraft) use(c *measure.LaneClosure, e *measure.Estimate) {
 
 // heavy reads the heavy vehicles of a work zone. Where classes carry passenger-car equivalents, flows are in passenger
 // cars already.
-func (d *altDraft) heavy(t *altTable) measure.HeavyVehicles {
+func (d *altDraft) heavy(t *table) measure.HeavyVehicles {
 	h := measure.HeavyVehicles{Share: t.quantity("heavy_vehicles", unit.Share, 0), Equivalent: t.number("heavy_equivalent", 0)}
 	if h.Share > 1 {
 		t.fault("heavy_vehicles", "", "a share of %g is above 1", h.Share)
@@ -98,7 +98,7 @@ func (d *altDraft) heavy(t *altTable) measure.HeavyVehicles {
 }
 
 // handbook reads what the handbook method asks for.
-func (d *altDraft) handbook(t *altTable, c *measure.LaneClosure, link *network.Link) *measure.WorkZone {
+func (d *altDraft) handbook(t *table, c *measure.LaneClosure, link *network.Link) *measure.WorkZone {
 	w := &measure.WorkZone{
 		Lanes: link.Lanes, Open: link.Lanes - c.Lanes,
 		Hard: t.choice("barrier", "soft", "hard"), Rural: t.choice("area", "urban", "rural"), Night: t.choice("light", "day", "night"),
@@ -123,7 +123,7 @@ func (d *altDraft) handbook(t *altTable, c *measure.LaneClosure, link *network.L
 }
 
 // choice reads one of two words, of which the first is the default; it reports whether it is the second.
-func (t *altTable) choice(key, first, second string) bool {
+func (t *table) choice(key, first, second string) bool {
 	switch word := t.text(key); word {
 	case "", first:
 	case second:
@@ -136,7 +136,7 @@ func (t *altTable) choice(key, first, second string) bool {
 
 // ramps reads the ramp density, in ramps per km (ramps_per_km) or per mile (ramp_density); by default it is counted on
 // the network.
-func (d *altDraft) ramps(t *altTable, c *measure.LaneClosure) float64 {
+func (d *altDraft) ramps(t *table, c *measure.LaneClosure) float64 {
 	switch {
 	case t.has("ramps_per_km"):
 		return t.positive("ramps_per_km") / unit.Kilometre
@@ -152,7 +152,7 @@ func (d *altDraft) ramps(t *altTable, c *measure.LaneClosure) float64 {
 }
 
 // positive reads a number that must not be negative.
-func (t *altTable) positive(key string) float64 {
+func (t *table) positive(key string) float64 {
 	x := t.number(key, 0)
 	if !(x >= 0) {
 		t.fault(key, "", "`%s` is %g: it must be 0 or more", key, x)
@@ -161,7 +161,7 @@ func (t *altTable) positive(key string) float64 {
 }
 
 // coefficients reads overrides of the handbook's coefficients, in its own units.
-func (d *altDraft) coefficients(t *altTable, c *measure.Coefficients) {
+func (d *altDraft) coefficients(t *table, c *measure.Coefficients) {
 	places := map[string]*float64{
 		"base": &c.Base, "severity": &c.Severity, "barrier": &c.Barrier, "area": &c.Area, "lateral": &c.Lateral, "light": &c.Light,
 		"speed_base": &c.SpeedBase, "speed_ratio": &c.SpeedRatio, "speed_limit": &c.SpeedLimit, "speed_severity": &c.SpeedSeverity,
@@ -185,7 +185,7 @@ func (d *altDraft) coefficients(t *altTable, c *measure.Coefficients) {
 }
 
 // rule reads what the rule of thumb asks for.
-func (d *altDraft) rule(t *altTable, c *measure.LaneClosure, link *network.Link) *measure.RuleOfThumb {
+func (d *altDraft) rule(t *table, c *measure.LaneClosure, link *network.Link) *measure.RuleOfThumb {
 	r := &measure.RuleOfThumb{
 		Lanes: link.Lanes, Open: link.Lanes - c.Lanes, LongTerm: t.choice("term", "short", "long"),
 		Base: t.quantity("base", unit.FlowPerLane, 0), Intensity: t.number("intensity", 0) * unit.VehPerHour,

@@ -8,8 +8,8 @@ import (
 	"example.org/tailback/network/unit"
 )
 
-// altTable is one TOML table below [[alternative]], with the path of keys that leads to it and where faults go.
-type altTable struct {
+// table is one TOML table below [[alternative]], with the path of keys that leads to it and where faults go.
+type table struct {
 	path   string // such as alternative[0].lane_closure[1]
 	keys   map[string]any
 	report func(path, text, hint string)
@@ -17,12 +17,12 @@ type altTable struct {
 }
 
 // fault reports what is wrong with a key, "" for the table itself.
-func (t *altTable) fault(key, hint, format string, args ...any) {
+func (t *table) fault(key, hint, format string, args ...any) {
 	t.bad = true
 	t.report(t.at(key), fmt.Sprintf(format, args...), hint)
 }
 
-func (t *altTable) at(key string) string {
+func (t *table) at(key string) string {
 	if key == "" {
 		return t.path
 	}
@@ -30,7 +30,7 @@ func (t *altTable) at(key string) string {
 }
 
 // known reports every key that is not in a list of words, and the word that is spelled most like it.
-func (t *altTable) known(words string) {
+func (t *table) known(words string) {
 	list := strings.Fields(words)
 	for key := range t.keys {
 		if slices.Contains(list, key) {
@@ -45,10 +45,10 @@ func (t *altTable) known(words string) {
 }
 
 // has reports whether a key is given.
-func (t *altTable) has(key string) bool { _, ok := t.keys[key]; return ok }
+func (t *table) has(key string) bool { _, ok := t.keys[key]; return ok }
 
 // text reads a text; "" where it is not given.
-func (t *altTable) text(key string) string {
+func (t *table) text(key string) string {
 	switch x := t.keys[key].(type) {
 	case nil:
 	case string:
@@ -60,7 +60,7 @@ func (t *altTable) text(key string) string {
 }
 
 // number reads a plain number.
-func (t *altTable) number(key string, otherwise float64) float64 {
+func (t *table) number(key string, otherwise float64) float64 {
 	switch x := t.keys[key].(type) {
 	case nil:
 	case int64:
@@ -74,7 +74,7 @@ func (t *altTable) number(key string, otherwise float64) float64 {
 }
 
 // quantity reads a text with a unit; a share may be a plain number.
-func (t *altTable) quantity(key string, kind unit.Kind, otherwise float64) float64 {
+func (t *table) quantity(key string, kind unit.Kind, otherwise float64) float64 {
 	var x float64
 	var err error
 	switch v := t.keys[key].(type) {
@@ -84,12 +84,12 @@ func (t *altTable) quantity(key string, kind unit.Kind, otherwise float64) float
 		x, err = unit.Parse(kind, v)
 	case int64, float64:
 		if kind != unit.Share {
-			t.fault(key, "", "`%s` needs a unit in quotes, such as %s", key, altExample(kind))
+			t.fault(key, "", "`%s` needs a unit in quotes, such as %s", key, example(kind))
 			return otherwise
 		}
 		x, err = unit.FromNumber(kind, t.number(key, 0))
 	default:
-		err = fmt.Errorf("found %v, want a %s such as %s", v, kind, altExample(kind))
+		err = fmt.Errorf("found %v, want a %s such as %s", v, kind, example(kind))
 	}
 	if err != nil {
 		t.fault(key, "", "`%s`: %v", key, err)
@@ -98,8 +98,8 @@ func (t *altTable) quantity(key string, kind unit.Kind, otherwise float64) float
 	return x
 }
 
-// altExample shows how a quantity is written.
-func altExample(kind unit.Kind) string {
+// example shows how a quantity is written.
+func example(kind unit.Kind) string {
 	return map[unit.Kind]string{
 		unit.Speed: `"80 km/h"`, unit.Length: `"300 m"`, unit.Flow: `"900 veh/h"`, unit.FlowPerLane: `"1550 veh/h/lane"`,
 		unit.DensityPerLane: `"130 veh/km/lane"`, unit.Duration: `"15 min"`, unit.Share: "0.9",
@@ -107,7 +107,7 @@ func altExample(kind unit.Kind) string {
 }
 
 // clock reads a clock time.
-func (t *altTable) clock(key string, otherwise float64) float64 {
+func (t *table) clock(key string, otherwise float64) float64 {
 	if !t.has(key) {
 		return otherwise
 	}
@@ -120,7 +120,7 @@ func (t *altTable) clock(key string, otherwise float64) float64 {
 }
 
 // texts reads a list of texts.
-func (t *altTable) texts(key string) []string {
+func (t *table) texts(key string) []string {
 	list, ok := t.keys[key].([]any)
 	if !ok {
 		if t.has(key) {
@@ -141,10 +141,10 @@ func (t *altTable) texts(key string) []string {
 }
 
 // tables reads a list of tables.
-func (t *altTable) tables(key string) []*altTable {
-	var list []*altTable
+func (t *table) tables(key string) []*table {
+	var list []*table
 	add := func(m map[string]any) {
-		list = append(list, &altTable{path: fmt.Sprintf("%s[%d]", t.at(key), len(list)), keys: m, report: t.report})
+		list = append(list, &table{path: fmt.Sprintf("%s[%d]", t.at(key), len(list)), keys: m, report: t.report})
 	}
 	switch x := t.keys[key].(type) {
 	case nil:
@@ -168,13 +168,25 @@ func (t *altTable) tables(key string) []*altTable {
 }
 
 // table reads one table; nil where it is not given.
-func (t *altTable) table(key string) *altTable {
+func (t *table) table(key string) *table {
 	switch x := t.keys[key].(type) {
 	case nil:
 	case map[string]any:
-		return &altTable{path: t.at(key), keys: x, report: t.report}
+		return &table{path: t.at(key), keys: x, report: t.report}
 	default:
 		t.fault(key, "", "`%s` must be a table in braces, found %v", key, x)
 	}
 	return nil
+}
+
+// truth reads true or false.
+func (t *table) truth(key string) bool {
+	switch x := t.keys[key].(type) {
+	case nil:
+	case bool:
+		return x
+	default:
+		t.fault(key, "", "`%s` must be true or false, found %v", key, x)
+	}
+	return false
 }
