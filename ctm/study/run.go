@@ -55,11 +55,22 @@ func Run(ctx context.Context, sc *ctm.Scenario, opt *Options) (*Result, error) {
 	if err != nil {
 		return nil, err
 	}
+	r, err := record(ctx, m, opt)
+	if err != nil {
+		return nil, err
+	}
+	r.warn()
+	r.Wall = time.Since(begin).Seconds()
+	return r, nil
+}
+
+// record runs a model from its present state to the end of its period. What it records begins at that state.
+func record(ctx context.Context, m *ctm.Model, opt *Options) (*Result, error) {
 	g := m.View().Grid()
 	r := &Result{
 		Scenario: m.View().Scenario(), Grid: g, Criterion: opt.Queued,
 		Links: observe.NewLinks(opt.Queued), Entries: &observe.Entries{},
-		Queues: observe.NewQueues(opt.Queued), Corridors: observe.NewCorridors(sc.Corridors),
+		Queues: observe.NewQueues(opt.Queued), Corridors: observe.NewCorridors(m.View().Scenario().Corridors),
 	}
 	often := looks(g)
 	watches := []ctm.Watch{
@@ -71,6 +82,7 @@ func Run(ctx context.Context, sc *ctm.Scenario, opt *Options) (*Result, error) {
 	if opt.Progress != nil {
 		watches = append(watches, ctm.Watch{Every: g.PerReport, Observer: progress{opt.Progress, float64(g.Steps) * g.Step}})
 	}
+	var err error
 	if r.Solve, err = m.Run(ctx, watches...); err != nil {
 		return nil, err
 	}
@@ -78,8 +90,6 @@ func Run(ctx context.Context, sc *ctm.Scenario, opt *Options) (*Result, error) {
 		return nil, err
 	}
 	r.total()
-	r.warn()
-	r.Wall = time.Since(begin).Seconds()
 	return r, nil
 }
 
