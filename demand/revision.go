@@ -141,9 +141,12 @@ func (r *Revision) MoveEntry(from network.LinkID, to []Share, w Window) {
 	r.note(from, to, moved)
 }
 
-// note adds moves to the record.
+// note adds moves to the record, but for those of nobody.
 func (r *Revision) note(from network.LinkID, to []Share, moved []float64) {
 	for k, s := range to {
+		if moved[k] == 0 {
+			continue
+		}
 		r.rec.Moves = append(r.rec.Moves, Move{from, s.To, moved[k]})
 	}
 }

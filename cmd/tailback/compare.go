@@ -90,7 +90,7 @@ func (v *sideBySide) one(b *strings.Builder, i int, c *study.Comparison) {
 	for _, note := range a.Notes {
 		b.WriteString(block("note", note))
 	}
-	fmt.Fprintf(b, "\n%-24s %12s %12s %12s %9s\n", "", "base", "alternative", "change", "percent")
+	fmt.Fprintf(b, "\n%-27s %11s %11s %10s %8s\n", "", "base", "alternative", "change", "percent")
 	for k := range c.Changes {
 		if line := v.line(&c.Changes[k]); line != "" {
 			b.WriteString(line)
@@ -102,45 +102,48 @@ func (v *sideBySide) one(b *strings.Builder, i int, c *study.Comparison) {
 	}
 }
 
-// shown is how a measure is printed.
+// shown is how a measure is printed: a label with its unit, and its value and change without one.
 type shown struct {
-	label string
-	text  func(x float64, u unit.System) string
-	delta func(x float64, u unit.System) string
+	label       string
+	text, delta func(x float64, u unit.System) string
 }
 
 func count(x float64, _ unit.System) string   { return whole(x) }
-func perHour(x float64, _ unit.System) string { return whole(x) + " veh/h" }
-func vehHours(x float64, _ unit.System) string {
-	return few(x) + " veh·h"
-}
-func minutes(x float64, _ unit.System) string { return fmt.Sprintf("%.1f min", x/unit.Minute) }
+func amount(x float64, _ unit.System) string  { return few(x) }
+func minutes(x float64, _ unit.System) string { return fmt.Sprintf("%.1f", x/unit.Minute) }
 func clock(x float64, _ unit.System) string   { return minute(x) }
+
+// vehDistance writes vehicle-kilometres in the system's unit.
 func vehDistance(x float64, u unit.System) string {
-	return distance(x*unit.Kilometre, u)
-}
-func length(x float64, u unit.System) string {
-	if x < 0 {
-		return "-" + u.Length(-x)
+	if u == unit.US {
+		return whole(x * unit.Kilometre / unit.Mile)
 	}
-	return u.Length(x)
+	return whole(x)
 }
 
-// shownMeasures are the lines of the table, by the measure's name.
+// length writes metres in kilometres or miles.
+func length(x float64, u unit.System) string {
+	if u == unit.US {
+		return fmt.Sprintf("%.2f", x/unit.Mile+0)
+	}
+	return fmt.Sprintf("%.2f", x/unit.Kilometre+0)
+}
+
+// shownMeasures are the lines of the table, by the measure's name. %s in a label is the unit of distance.
 var shownMeasures = map[string]shown{
-	"travel_veh_hours":                {"time on the road", vehHours, vehHours},
-	"travel_veh_km":                   {"distance", vehDistance, vehDistance},
-	"delay_veh_hours":                 {"delay, waiting included", vehHours, vehHours},
-	"waiting_veh_hours":               {"waiting outside", vehHours, vehHours},
-	"max_queue_m":                     {"longest queue", length, length},
-	"max_queue_time_s":                {"  at", clock, minutes},
-	"last_clearance_s":                {"last queue clears", clock, minutes},
-	"bottleneck_throughput_veh_per_h": {"bottleneck discharge", perHour, perHour},
-	"worst_corridor_time_s":           {"worst corridor time", minutes, minutes},
+	"travel_veh_hours":                {"time on the road, veh·h", count, count},
+	"travel_veh_km":                   {"distance, veh·%s", vehDistance, vehDistance},
+	"delay_veh_hours":                 {"delay with waiting, veh·h", amount, amount},
+	"waiting_veh_hours":               {"waiting outside, veh·h", amount, amount},
+	"max_queue_m":                     {"longest queue, %s", length, length},
+	"max_queue_time_s":                {"  its time; change in min", clock, minutes},
+	"last_clearance_s":                {"last queue clears; min", clock, minutes},
+	"bottleneck_throughput_veh_per_h": {"costliest discharges, veh/h", count, count},
+	"worst_corridor_time_s":           {"worst corridor time, min", minutes, minutes},
 	"links_reached_by_a_queue":        {"links reached by queues", count, count},
-	"ramps_reached_by_a_queue":        {"ramps and junctions", count, count},
+	"ramps_reached_by_a_queue":        {"ramps, junctions reached", count, count},
 	"left_veh":                        {"vehicles arrived", count, count},
-	"waiting_veh":                     {"waiting at the end", count, count},
+	"waiting_veh":                     {"vehicles waiting at the end", count, count},
 }
 
 // line prints one measure, "" where the table leaves it out.
@@ -156,14 +159,23 @@ func (v *sideBySide) line(c *study.Change) string {
 		return text(x, v.units)
 	}
 	percent := "-"
-	if p := c.Percent(); !math.IsNaN(p) && s.label != "  at" && s.label != "last queue clears" {
-		percent = fmt.Sprintf("%+.1f %%", p)
+	if p := c.Percent(); !math.IsNaN(p) && !strings.Contains(s.label, ";") { // a clock time has no percentage
+		percent = fmt.Sprintf("%+.1f", p)
 	}
 	delta := cell(c.Diff(), s.delta)
-	if d := c.Diff(); d > 0 {
+	if c.Diff() > 0 {
 		delta = "+" + delta
 	}
-	return strings.TrimRight(fmt.Sprintf("%-24s %12s %12s %12s %9s  %s", s.label, cell(c.Base, s.text), cell(c.Value, s.text), delta, percent, c.Verdict()), " ") + "\n"
+	label := strings.ReplaceAll(s.label, "%s", v.far())
+	return strings.TrimRight(fmt.Sprintf("%-27s %11s %11s %10s %8s  %s", label, cell(c.Base, s.text), cell(c.Value, s.text), delta, percent, c.Verdict()), " ") + "\n"
+}
+
+// far is the unit of distances.
+func (v *sideBySide) far() string {
+	if v.units == unit.US {
+		return "mi"
+	}
+	return "km"
 }
 
 // moved prints what became of the base's vehicles.

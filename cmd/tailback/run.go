@@ -161,7 +161,7 @@ func (c *runCommand) Run(s session) error {
 		if i > 0 {
 			fmt.Fprintln(s.out)
 			view.changes = r.alts[i-1].Changes(r.units)
-			view.notes = r.alts[i-1].Notes
+			view.notes, view.brief = r.alts[i-1].Notes, true
 		}
 		if err := view.write(s.out); err != nil {
 			return err

@@ -21,6 +21,7 @@ type screen struct {
 	units       unit.System
 	result      *study.Result
 	changes     []string // what an alternative changes
+	brief       bool     // without how it was computed and the caution, which the base's screen has
 	notes       []string // which numbers it uses and where they come from
 }
 
@@ -47,11 +48,15 @@ func (s *screen) write(w io.Writer) error {
 	b.WriteByte('\n')
 	s.traffic(&b)
 	b.WriteByte('\n')
-	s.method(&b)
+	if !s.brief {
+		s.method(&b)
+	}
 	for _, warning := range s.result.Warnings {
 		b.WriteString(block("warning", warning))
 	}
-	b.WriteString(block("caution", table.Caution))
+	if !s.brief {
+		b.WriteString(block("caution", table.Caution))
+	}
 	b.WriteString(block("files", s.folder))
 	_, err := io.WriteString(w, b.String())
 	return err

@@ -200,16 +200,16 @@ func (d *draft) queue() {
 		return
 	}
 	text := t.text("when")
-	c, err := Criterion(text)
+	c, err := ParseQueued(text)
 	if err != nil && !t.bad {
 		t.fault("when", "", "%v", err)
 	}
 	d.Queued = c
 }
 
-// Criterion reads what counts as queued: "density", a speed such as "50 km/h", or a share of the free speed such as
+// ParseQueued reads what counts as queued: "density", a speed such as "50 km/h", or a share of the free speed such as
 // "60 %".
-func Criterion(text string) (observe.Criterion, error) {
+func ParseQueued(text string) (observe.Criterion, error) {
 	if text == "density" {
 		return observe.Criterion{}, nil
 	}
