@@ -3,6 +3,7 @@ package study
 
 import (
 	"context"
+	"errors"
 	"math"
 	"time"
 
@@ -64,8 +65,9 @@ func Run(ctx context.Context, sc *ctm.Scenario, opt *Options) (*Result, error) {
 	return r, nil
 }
 
-// record runs a model from its present state to the end of its period. What it records begins at that state.
-func record(ctx context.Context, m *ctm.Model, opt *Options) (*Result, error) {
+// record runs a model from its present state to the end of its period, or until one more watch says that it has
+// settled. What it records begins at that state.
+func record(ctx context.Context, m *ctm.Model, opt *Options, more ...ctm.Watch) (*Result, error) {
 	g := m.View().Grid()
 	r := &Result{
 		Scenario: m.View().Scenario(), Grid: g, Criterion: opt.Queued,
@@ -83,9 +85,10 @@ func record(ctx context.Context, m *ctm.Model, opt *Options) (*Result, error) {
 		watches = append(watches, ctm.Watch{Every: g.PerReport, Observer: progress{opt.Progress, float64(g.Steps) * g.Step}})
 	}
 	var err error
-	if r.Solve, err = m.Run(ctx, watches...); err != nil {
+	if r.Solve, err = m.Run(ctx, append(watches, more...)...); err != nil && !errors.Is(err, errSettled) {
 		return nil, err
 	}
+	r.Queues.Close()
 	if r.Lost, err = m.Check(); err != nil {
 		return nil, err
 	}
