@@ -105,9 +105,13 @@ func plain(x any) (float64, bool) {
 	return 0, false
 }
 
+// standIn takes the place of a diagram that could not be read, so that the rest of the network can be checked.
+var standIn, _ = diagram.New("triangular", diagram.Params{FreeSpeed: 30, WaveSpeed: 5, JamDensity: 0.15})
+
 // chooseDiagram gives a link its diagram: the one it names, else the one named like its kind, else `default`; with the
 // link's own free speed, capacity and jam density.
 func (d *draft) chooseDiagram(r *road, ft *feature, l *network.Link) {
+	l.Diagram = standIn
 	name := ft.textOf("diagram")
 	g := d.diagram(name)
 	if name != "" && g == nil {
