@@ -89,7 +89,9 @@ func (d *altDraft) divert(t *table, link network.LinkID, w demand.Window) {
 	begins := slices.Contains(d.base.Demand.EntryLinks(), link)
 	if begins {
 		for i, s := range to {
-			d.entry(t, fmt.Sprintf("divert[%d].to", i), s.To)
+			if s.To >= 0 {
+				d.entry(t, fmt.Sprintf("divert[%d].to", i), s.To)
+			}
 		}
 	}
 	if t.bad {

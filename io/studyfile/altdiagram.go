@@ -23,6 +23,9 @@ func (d *altDraft) diagramChange(t *table) {
 	} else if !slices.Contains(d.diagrams, name) && !t.bad {
 		t.fault("diagram", "the study has `"+strings.Join(d.diagrams, "`, `")+"`", "the study has no [diagram.%s]", name)
 	}
+	if drop >= 1 {
+		t.fault("discharge_drop", "", "a drop of %g leaves nothing: it must be below 1", drop)
+	}
 	links, count, waves := slices.Clone(d.road.Links), 0, false
 	for i := range links {
 		l := &links[i]

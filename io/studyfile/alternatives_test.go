@@ -7,8 +7,6 @@ import (
 	"strings"
 	"testing"
 
-	"github.com/BurntSushi/toml"
-
 	"example.org/tailback/ctm"
 	"example.org/tailback/ctm/measure"
 	"example.org/tailback/demand"
@@ -67,33 +65,31 @@ func corridor(t *testing.T) *ctm.Scenario {
 	}
 }
 
-// read reads alternatives from TOML and returns what was reported, a line each.
-func read(t *testing.T, base *ctm.Scenario, text string) (list []Alternative, faults, warnings []string) {
+// read reads the [[alternative]] tables of a study file on a base, and returns what it reports, as users see it.
+func read(t *testing.T, base *ctm.Scenario, text string) (list []Alternative, faulty, warnings []string) {
 	t.Helper()
-	var tree struct {
-		Alternative []map[string]any `toml:"alternative"`
+	d := &draft{f: &faults{}, Study: Study{File: "study.toml", Base: base}}
+	for _, name := range []string{"default", "freeway", "ramp"} {
+		d.Diagrams = append(d.Diagrams, Diagram{Name: name})
 	}
-	if _, err := toml.Decode(text, &tree); err != nil {
-		t.Fatal(err)
+	doc, ok := decode(d.File, []byte(text), d.f)
+	if !ok {
+		t.Fatal(d.f.err())
 	}
-	note := func(to *[]string) func(path, text, hint string) {
-		return func(path, text, hint string) {
-			line := path + ": " + text
-			if hint != "" {
-				line += " (" + hint + ")"
-			}
-			*to = append(*to, line)
-		}
+	d.doc, d.root = doc, doc.root(d.f)
+	d.alternatives()
+	_ = d.f.err() // sorts them
+	for _, e := range d.f.list {
+		faulty = append(faulty, e.Error())
 	}
-	list = alternatives(base, tree.Alternative, []string{"default", "freeway", "ramp"}, note(&faults), note(&warnings))
-	return list, faults, warnings
+	return d.Alternatives, faulty, d.Warnings
 }
 
 // good reads alternatives that must be right.
 func good(t *testing.T, base *ctm.Scenario, text string) []Alternative {
 	t.Helper()
-	list, faults, _ := read(t, base, text)
-	for _, f := range faults {
+	list, faulty, _ := read(t, base, text)
+	for _, f := range faulty {
 		t.Error(f)
 	}
 	return list
@@ -275,5 +271,35 @@ diagram_change = [{ diagram = "freeway", shape = "greenshields" }]
 	}
 	if l, ok := n.Link("E3"); !ok || l != 2 {
 		t.Error("ids moved")
+	}
+}
+
+// An alternative that changes nothing gives the base's cells to the last bit, on the grid that the others cut.
+func TestNothingChanged(t *testing.T) {
+	base := corridor(t)
+	list := good(t, base, `
+[[alternative]]
+name = "nothing"
+demand_change = [{ factor = 1 }]
+[[alternative]]
+name = "works"
+lane_closure = [{ links = ["E3"], from = "512 m", to = "1.3 km", lanes = 1, capacity = "1400 veh/h/lane" }]
+`)
+	cells := func(sc *ctm.Scenario) []float64 {
+		m, err := ctm.New(sc)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for m.View().Time() < 20*3600 {
+			m.Step()
+		}
+		return m.View().Cars()
+	}
+	same, works := cells(list[0].Scenario), cells(list[1].Scenario)
+	if !slices.Equal(cells(base), same) {
+		t.Error("an alternative without changes differs from the base")
+	}
+	if len(works) != len(same) || slices.Equal(works, same) {
+		t.Error("the works stand on another grid, or change nothing")
 	}
 }

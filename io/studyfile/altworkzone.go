@@ -43,8 +43,14 @@ func (d *altDraft) workZone(closure, t *table, c *measure.LaneClosure) {
 	default:
 		t.fault("method", "", "unknown method `%s`: it is `handbook` (the default) or `rule`", method)
 	}
-	if t.bad {
-		closure.bad = true
+	switch {
+	case t.bad:
+	case !(e.Capacity > 0):
+		closure.fault("work_zone", "check its inputs and coefficients, or give `capacity`", "the method leaves no capacity")
+	case e.FreeSpeed < 0:
+		closure.fault("work_zone", "check its speed limits and coefficients", "the method gives a free speed below 0")
+	}
+	if closure.bad = closure.bad || t.bad; closure.bad {
 		return
 	}
 	d.use(c, &e)

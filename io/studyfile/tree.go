@@ -2,6 +2,7 @@ package studyfile
 
 import (
 	"fmt"
+	"math"
 	"slices"
 	"strings"
 
@@ -66,7 +67,10 @@ func (t *table) number(key string, otherwise float64) float64 {
 	case int64:
 		return float64(x)
 	case float64:
-		return x
+		if !math.IsNaN(x) && !math.IsInf(x, 0) {
+			return x
+		}
+		t.fault(key, "", "`%s` must be a finite number, found %v", key, x)
 	default:
 		t.fault(key, "", "`%s` must be a number, found %v", key, x)
 	}
