@@ -16,6 +16,7 @@ type Model struct {
 	sc      *Scenario
 	grid    *Grid
 	step    int
+	version int      // of the roads
 	roads   []Road   // by segment, in force
 	coefs   []coef   // by segment, in force
 	lim     *Limits  // in force
@@ -179,6 +180,7 @@ func (c *coef) fill(sending, receiving, k []float64) { diagram.Fill(c.d, sending
 
 // refresh applies the measures in force and derives the segments' parameters from them.
 func (m *Model) refresh() {
+	m.version++
 	m.lim.reset()
 	for _, measure := range m.sc.Measures {
 		measure.Apply(View{m}, m.lim)

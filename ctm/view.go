@@ -27,6 +27,9 @@ func (v View) Time() float64 { return v.m.grid.Time(v.m.step) }
 // Road is what a segment is like at present.
 func (v View) Road(segment int) *Road { return &v.m.roads[segment] }
 
+// Version changes whenever a Road does.
+func (v View) Version() int { return v.m.version }
+
 // Cars is the content of every cell in passenger cars, len == Grid().Cells.
 func (v View) Cars() []float64 { return v.m.n }
 

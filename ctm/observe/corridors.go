@@ -8,12 +8,14 @@ import (
 	"example.org/tailback/network/diagram"
 )
 
-// Corridors records the speed of every cell of every corridor at each look, and gives travel times from them: a
+// Corridors records the density of every cell of every corridor at each look, and gives travel times from them: a
 // vehicle that departs at a time drives through the recorded field, at the speed of the cell it is in, until it
 // has passed the last one. The speed of a cell is the flow its density carries over that density.
 type Corridors struct {
 	Chains []network.Corridor
 	times  []float64
+	roads  []int // by look: which version of the paths' diagrams
+	last   int   // version of the view at the last look
 	paths  []path
 }
 
@@ -22,8 +24,9 @@ type path struct {
 	cells    []int
 	segments []int
 	dx       []float64
-	free     float64     // s
-	speeds   [][]float32 // by look and cell, m/s
+	free     float64             // s
+	density  [][]float32         // by look and cell, passenger cars per metre and lane
+	diagrams [][]diagram.Diagram // by version and cell
 }
 
 // NewCorridors makes the observer for the corridors of a scenario; watch it about every half minute.
@@ -36,17 +39,37 @@ func (o *Corridors) Observe(v ctm.View) error {
 			o.paths = append(o.paths, newPath(v, &o.Chains[i]))
 		}
 	}
+	if len(o.times) == 0 || v.Version() != o.last {
+		o.last = v.Version()
+		for i := range o.paths {
+			o.paths[i].renew(v)
+		}
+	}
 	o.times = append(o.times, v.Time())
 	for i := range o.paths {
 		p := &o.paths[i]
-		speeds := make([]float32, len(p.cells))
+		o.roads = append(o.roads[:len(o.times)-1], len(p.diagrams)-1)
+		density := make([]float32, len(p.cells))
 		for k, cell := range p.cells {
-			road := v.Road(p.segments[k])
-			speeds[k] = float32(diagram.Speed(road.Diagram, v.Cars()[cell]/(p.dx[k]*road.Lanes)))
+			density[k] = float32(v.Cars()[cell] / (p.dx[k] * v.Road(p.segments[k]).Lanes))
 		}
-		p.speeds = append(p.speeds, speeds)
+		p.density = append(p.density, density)
 	}
 	return nil
+}
+
+// renew notes the diagrams in force.
+func (p *path) renew(v ctm.View) {
+	list := make([]diagram.Diagram, len(p.cells))
+	for k, s := range p.segments {
+		list[k] = v.Road(s).Diagram
+	}
+	p.diagrams = append(p.diagrams, list)
+}
+
+// speed of a cell at a look, m/s.
+func (o *Corridors) speed(p *path, look, cell int) float64 {
+	return diagram.Speed(p.diagrams[o.roads[look]][cell], float64(p.density[look][cell]))
 }
 
 func newPath(v ctm.View, c *network.Corridor) path {
@@ -83,7 +106,7 @@ func (o *Corridors) TravelTime(corridor int, depart float64) float64 {
 			if look+1 >= len(o.times) {
 				return math.NaN()
 			}
-			v := float64(p.speeds[look][k])
+			v := o.speed(p, look, k)
 			until := o.times[look+1] - now
 			if v*until < left { // the next look finds it in the same cell
 				left -= v * until

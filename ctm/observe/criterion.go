@@ -2,6 +2,7 @@ package observe
 
 import (
 	"fmt"
+	"math"
 
 	"example.org/tailback/ctm"
 	"example.org/tailback/network/diagram"
@@ -38,16 +39,28 @@ func (c Criterion) String() string {
 	return "density above critical"
 }
 
-// queued applies the criterion to a road at a density k (passenger cars per metre and lane).
-func (c Criterion) queued(r *ctm.Road, k float64) bool {
-	if k <= 0 {
-		return false
-	}
+// density is the density (passenger cars per metre and lane) above which a road counts as queued. Speed never rises
+// with density on any diagram, so a limit of speed is one of density, found by bisection.
+func (c Criterion) density(r *ctm.Road) float64 {
+	var limit float64
 	switch c.Kind {
 	case SpeedBelow:
-		return diagram.Speed(r.Diagram, k) < c.Value
+		limit = c.Value
 	case ShareBelow:
-		return diagram.Speed(r.Diagram, k) < c.Value*r.Diagram.FreeSpeed()
+		limit = c.Value * r.Diagram.FreeSpeed()
+	default:
+		return r.Diagram.Critical() * (1 + aboveCritical)
 	}
-	return k > r.Diagram.Critical()*(1+aboveCritical)
+	low, high := 0.0, r.Diagram.Jam()
+	if math.IsInf(high, 1) {
+		high = 100 * r.Diagram.Critical()
+	}
+	for range 60 {
+		if mid := (low + high) / 2; diagram.Speed(r.Diagram, mid) < limit {
+			high = mid
+		} else {
+			low = mid
+		}
+	}
+	return high
 }

@@ -61,7 +61,7 @@ type Spillback struct {
 // practice, no source). Its onset is when it was first seen.
 const leastStanding = 60
 
-// Queues follows standing queues through a run. Watch it every quarter of a minute or so; the results are
+// Queues follows standing queues through a run. Watch it every half minute or so; the results are
 // complete after the last state.
 type Queues struct {
 	Rows        []QueueRow

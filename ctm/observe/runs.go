@@ -27,7 +27,9 @@ func (r *Run) Length() float64 { return r.Head - r.Tail }
 type Finder struct {
 	Criterion Criterion
 	runs      []Run
-	first     []int // by link: its first run; len == links+1
+	first     []int     // by link: its first run; len == links+1
+	full      []float64 // by segment: content of a cell above which it is queued
+	version   int       // of the roads for which full holds
 	veh       []float64
 }
 
@@ -35,6 +37,13 @@ type Finder struct {
 func (f *Finder) Find(v ctm.View) []Run {
 	g := v.Grid()
 	f.runs, f.first = f.runs[:0], f.first[:0]
+	if f.full == nil || f.version != v.Version() {
+		f.version, f.full = v.Version(), f.full[:0]
+		for s := range g.Segments {
+			road := v.Road(s)
+			f.full = append(f.full, f.Criterion.density(road)*road.Lanes*g.Segments[s].Dx)
+		}
+	}
 	for i := range g.Links {
 		f.first = append(f.first, len(f.runs))
 		f.find(v, network.LinkID(i))
@@ -52,15 +61,15 @@ func (f *Finder) find(v ctm.View, link network.LinkID) {
 	l, cars := g.Links[link], v.Cars()
 	open := -1 // first cell of the run being read
 	for s := l.FirstSegment; s <= l.Last(); s++ {
-		seg, road := &g.Segments[s], v.Road(s)
-		scale := 1 / (seg.Dx * road.Lanes)
-		for i := seg.First; i < seg.First+seg.Cells; i++ {
-			queued := f.Criterion.queued(road, cars[i]*scale)
-			if queued && open < 0 {
-				open = i
-			}
-			if !queued && open >= 0 {
-				f.add(v, link, open, i-1)
+		seg, full := &g.Segments[s], f.full[s]
+		for i, n := range cars[seg.First : seg.First+seg.Cells] {
+			switch {
+			case n > full:
+				if open < 0 {
+					open = seg.First + i
+				}
+			case open >= 0:
+				f.add(v, link, open, seg.First+i-1)
 				open = -1
 			}
 		}

@@ -47,7 +47,7 @@ type Totals struct {
 }
 
 // lookEvery is about how often the queues and the corridors' speeds are looked at, s.
-const lookEvery = 15
+const lookEvery = 30
 
 // Run computes a scenario and records everything.
 func Run(ctx context.Context, sc *ctm.Scenario, opt *Options) (*Result, error) {
