@@ -65,8 +65,8 @@ func corridor(t *testing.T) *ctm.Scenario {
 	}
 }
 
-// read reads the [[alternative]] tables of a study file on a base, and returns what it reports, as users see it.
-func read(t *testing.T, base *ctm.Scenario, text string) (list []Alternative, faulty, warnings []string) {
+// readAlternatives reads the [[alternative]] tables of a study file on a base, and returns what it reports, as users see it.
+func readAlternatives(t *testing.T, base *ctm.Scenario, text string) (list []Alternative, faulty, warnings []string) {
 	t.Helper()
 	d := &draft{f: &faults{}, Study: Study{File: "study.toml", Base: base}}
 	for _, name := range []string{"default", "freeway", "ramp"} {
@@ -88,7 +88,7 @@ func read(t *testing.T, base *ctm.Scenario, text string) (list []Alternative, fa
 // good reads alternatives that must be right.
 func good(t *testing.T, base *ctm.Scenario, text string) []Alternative {
 	t.Helper()
-	list, faulty, _ := read(t, base, text)
+	list, faulty, _ := readAlternatives(t, base, text)
 	for _, f := range faulty {
 		t.Error(f)
 	}

@@ -93,7 +93,7 @@ func TestFaultsOfAlternatives(t *testing.T) {
 		if c.hint != "" {
 			want += "\n  hint: " + c.hint
 		}
-		if _, faulty, _ := read(t, corridor(t), text); len(faulty) != 1 || faulty[0] != want {
+		if _, faulty, _ := readAlternatives(t, corridor(t), text); len(faulty) != 1 || faulty[0] != want {
 			t.Errorf("%s\ngot  %s\nwant %s", c.text, strings.Join(faulty, "\n     "), want)
 		}
 	}
@@ -106,7 +106,7 @@ func TestFaultsOfNames(t *testing.T) {
 		{"[[alternative]]\nname = \"a\"\n[[alternative]]\nname = \"a\"", "study.toml:4:1: the name `a` is taken: every alternative needs its own, and `base` is the study without any"},
 		{"[[alternative]]\nname = \"../a\"", "study.toml:2:1: `../a` cannot name a folder of results\n  hint: use letters, digits, `-` and `_`"},
 	} {
-		if _, faulty, _ := read(t, corridor(t), c.text); len(faulty) != 1 || faulty[0] != c.want {
+		if _, faulty, _ := readAlternatives(t, corridor(t), c.text); len(faulty) != 1 || faulty[0] != c.want {
 			t.Errorf("got %q, want %q", faulty, c.want)
 		}
 	}
@@ -114,7 +114,7 @@ func TestFaultsOfNames(t *testing.T) {
 
 // Several mistakes in a study written out with headers are reported together, each at its own line.
 func TestFaultsInOrder(t *testing.T) {
-	_, faulty, _ := read(t, corridor(t), `title = "t"
+	_, faulty, _ := readAlternatives(t, corridor(t), `title = "t"
 
 [[alternative]]
 name = "a"
@@ -150,7 +150,7 @@ divert = [
 
 // A closure outside the study's period is no fault, but a warning.
 func TestWarningsOfAlternatives(t *testing.T) {
-	_, faulty, warnings := read(t, corridor(t), "[[alternative]]\nname = \"a\"\nlane_closure = [{ links = [\"E3\"], lanes = 1, start = \"31:00\", end = \"32:00\" }]")
+	_, faulty, warnings := readAlternatives(t, corridor(t), "[[alternative]]\nname = \"a\"\nlane_closure = [{ links = [\"E3\"], lanes = 1, start = \"31:00\", end = \"32:00\" }]")
 	want := "study.toml:3: it lasts from 31:00 to 32:00, outside the study's period from 18:00 to 30:00: it changes nothing"
 	if len(faulty) != 0 || len(warnings) != 1 || warnings[0] != want {
 		t.Errorf("faults %q, warnings %q, want %q", faulty, warnings, want)
