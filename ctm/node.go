@@ -115,7 +115,7 @@ func (m *Model) refreshNodes() {
 			nd.problem.Priority[k] = m.coefs[s].q
 		}
 		for k, src := range nd.sources {
-			nd.problem.Priority[len(nd.ins)+k] = m.coefs[m.grid.Links[m.sources[src].link].FirstSegment].q
+			nd.problem.Priority[len(nd.ins)+k] = m.coefs[m.sources[src].first].q
 		}
 		for k, p := range nd.given {
 			if p > 0 {
@@ -207,11 +207,9 @@ func (m *Model) cross() {
 		m.crossNode(&m.nodes[i])
 	}
 	for i := range m.sources {
-		s := &m.sources[i]
-		if len(m.sc.Network.In(m.sc.Network.Links[s.link].From)) == 0 {
-			first := m.grid.Links[s.link].FirstSegment
-			s.flow = min(s.available, m.first[first])
-			m.in[first] = s.flow
+		if s := &m.sources[i]; s.alone {
+			s.flow = min(s.available, m.first[s.first])
+			m.in[s.first] = s.flow
 		}
 	}
 }

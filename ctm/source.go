@@ -8,6 +8,8 @@ import (
 // source is the queue outside the network at an entry link.
 type source struct {
 	link    network.LinkID
+	first   int  // the link's first segment
+	alone   bool // nothing else leads into the link
 	entries []*demand.Entry
 	// By class, in vehicles: arrived this step or still waiting; all that wanted to enter; all that did.
 	waiting, wanted, entered []float64
@@ -27,7 +29,10 @@ func (m *Model) addSources() {
 			byLink[e.Link] = at
 			c := len(m.pce)
 			buf := make([]float64, 4*c)
-			m.sources = append(m.sources, source{link: e.Link, waiting: buf[:c], wanted: buf[c : 2*c], entered: buf[2*c : 3*c], seconds: buf[3*c:]})
+			m.sources = append(m.sources, source{
+				link: e.Link, first: m.grid.Links[e.Link].FirstSegment,
+				alone: len(m.sc.Network.In(m.sc.Network.Links[e.Link].From)) == 0, waiting: buf[:c], wanted: buf[c : 2*c], entered: buf[2*c : 3*c], seconds: buf[3*c:],
+			})
 		}
 		m.sources[at].entries = append(m.sources[at].entries, e)
 	}
@@ -74,7 +79,7 @@ func (m *Model) enter() {
 			s.waiting[c] = w - veh
 			s.seconds[c] += s.waiting[c] * m.grid.Step
 			if m.classes != nil {
-				m.inC[c][m.grid.Links[s.link].FirstSegment] += veh
+				m.inC[c][s.first] += veh
 			}
 		}
 	}

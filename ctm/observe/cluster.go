@@ -31,9 +31,14 @@ type joiner struct {
 // that end there, for they wait for the same place.
 func (j *joiner) join(v ctm.View, f *Finder, runs []Run) []cluster {
 	n := v.Scenario().Network
+	if len(runs) == 0 {
+		return nil
+	}
 	j.reset(len(runs))
-	for node := range n.Nodes {
-		j.joinAt(n, f, network.NodeID(node))
+	for i := range runs {
+		if runs[i].AtEnd {
+			j.joinAt(n, f, i)
+		}
 	}
 	byRoot := make(map[int]int)
 	var list []cluster
@@ -67,23 +72,21 @@ func (j *joiner) reset(n int) {
 	}
 }
 
-// joinAt joins the runs that meet at a node.
-func (j *joiner) joinAt(n *network.Network, f *Finder, node network.NodeID) {
-	first := -1
+// joinAt joins a run that touches its link's downstream end with the runs beyond and beside it.
+func (j *joiner) joinAt(n *network.Network, f *Finder, i int) {
+	node := n.Links[f.runs[i].Link].To
+	for _, out := range n.Out(node) {
+		if d := f.begin(out); d >= 0 {
+			j.parent[j.root(i)] = j.root(d)
+			j.up[d] = append(j.up[d], i)
+		}
+	}
+	if len(n.Out(node)) != 1 {
+		return
+	}
 	for _, in := range n.In(node) {
-		i := f.last(in)
-		if i < 0 {
-			continue
-		}
-		if first >= 0 && len(n.Out(node)) == 1 {
-			j.parent[j.root(i)] = j.root(first)
-		}
-		first = i
-		for _, out := range n.Out(node) {
-			if d := f.begin(out); d >= 0 {
-				j.parent[j.root(i)] = j.root(d)
-				j.up[d] = append(j.up[d], i)
-			}
+		if k := f.last(in); k >= 0 {
+			j.parent[j.root(k)] = j.root(i)
 		}
 	}
 }

@@ -2,6 +2,7 @@ package study
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -13,7 +14,10 @@ import (
 // Window is a time in which a closure lasts, s after midnight.
 type Window struct{ Start, End float64 }
 
-// Shift makes the scenario of an alternative whose measures last over another window.
+// ErrShort says that a window is too short for an alternative's measures.
+var ErrShort = errors.New("the window is too short for the alternative's measures")
+
+// Shift makes the scenario of an alternative whose measures last over another window. It may return ErrShort.
 type Shift func(w Window) (*ctm.Scenario, error)
 
 // State says what is known of a window.
@@ -21,7 +25,7 @@ type State int
 
 // The states of a window. NotComputed is never permitted.
 const (
-	NotComputed State = iota // the window does not fit into the study's period
+	NotComputed State = iota // the window does not fit into the study's period, or is too short for the measures
 	Kept                     // every limit is kept
 	Broken                   // a limit is broken
 	Pruned                   // a shorter closure with the same start broke a limit already
@@ -68,6 +72,9 @@ func Hours(ctx context.Context, b *Trunk, shift Shift, limits []Limit, starts, d
 			default:
 				part[k], err = b.Window(ctx, shift, w, limits)
 				broken = part[k].Limit
+			}
+			if errors.Is(err, ErrShort) {
+				part[k], err = unknown(w, NotComputed), nil
 			}
 			if err != nil {
 				return err
