@@ -18,6 +18,7 @@ type Alternative struct {
 	Notes       []string      // which numbers were used and where they come from; what a reader should know
 	Moved       demand.Record // what became of the base's vehicles
 	texts       []func(unit.System) string
+	again       func(shift func(demand.Window) demand.Window) (*ctm.Scenario, error) // reads it with other windows
 }
 
 // Changes describes what the alternative changes, one line each, in the order in which it was read.
@@ -49,6 +50,7 @@ type altDraft struct {
 	diagrams []string   // names of the study's diagrams
 	shut     []occupied // ramp closures
 	meters   []occupied
+	shift    func(demand.Window) demand.Window // nil leaves windows as they are given
 	warn     func(path, text, hint string)
 }
 
@@ -74,6 +76,7 @@ func alternatives(base *ctm.Scenario, tables []map[string]any, diagrams []string
 		d.demand = demand.Revise(base.Demand, d.period)
 		d.read(t, names)
 		base.Cuts = append(base.Cuts, d.cuts...)
+		d.alt.again = rereader(base, t.keys, diagrams)
 		list = append(list, d.alt)
 	}
 	for i := range list {
@@ -128,6 +131,8 @@ func (d *altDraft) window(t *table) demand.Window {
 	w := demand.Window{From: t.clock("start", d.period.From), To: t.clock("end", d.period.To)}
 	switch {
 	case t.bad:
+	case d.shift != nil:
+		return d.shift(w)
 	case w.From >= w.To:
 		t.fault("end", "hours run past 24 for the following day: 05:00 of day 2 is \"29:00\"", "it ends at %s, not after its start at %s", altClock(w.To), altClock(w.From))
 	case w.To <= d.period.From || w.From >= d.period.To:

@@ -46,6 +46,9 @@ func (d *draft) demand() *demand.Demand {
 
 // demandParts loads the demand files, the study itself first where it holds demand.
 func (d *draft) demandParts() []demandPart {
+	if d.instead != "" {
+		return d.demandFiles([]string{d.instead})
+	}
 	var parts []demandPart
 	for _, key := range []string{"class", "entry", "turning", "trips"} {
 		if d.root.has(key) {
@@ -64,6 +67,12 @@ func (d *draft) demandParts() []demandPart {
 	default:
 		names = d.root.texts("demand")
 	}
+	return append(parts, d.demandFiles(names)...)
+}
+
+// demandFiles loads demand files.
+func (d *draft) demandFiles(names []string) []demandPart {
+	var parts []demandPart
 	for _, name := range names {
 		line, column := d.doc.position("demand")
 		data, ok := d.load(d.file(name), line, column, d.File)

@@ -15,6 +15,7 @@ import (
 
 	"example.org/tailback/ctm"
 	"example.org/tailback/ctm/observe"
+	"example.org/tailback/ctm/study"
 	"example.org/tailback/network"
 	"example.org/tailback/network/unit"
 )
@@ -29,7 +30,8 @@ type Study struct {
 	Queued       observe.Criterion
 	Inputs       []Input
 	Warnings     []string
-	Diagrams     []Diagram // of the study file, in the order of their names
+	Diagrams     []Diagram   // of the study file, in the order of their names
+	Cost         *study.Cost // nil where the study gives none
 }
 
 // Input is a file that was read.
@@ -46,6 +48,7 @@ type draft struct {
 	nodeLine map[string]int
 	network  *network.Network
 	counts   map[string]*countTable
+	instead  string // a demand file in place of the study's, "" none
 }
 
 func (d *draft) warn(format string, args ...any) {
@@ -54,11 +57,23 @@ func (d *draft) warn(format string, args ...any) {
 
 // Read reads a study file, or study.toml in a folder. The error is Errors, or one of the file system for the study
 // file itself.
-func Read(path string) (*Study, error) {
+func Read(path string) (*Study, error) { return readStudy(path, "") }
+
+// ReadDay reads a study with another demand file (a path) in place of its own: that of a day of the week.
+func ReadDay(path, demandFile string) (*Study, error) {
+	full, err := filepath.Abs(demandFile)
+	if err != nil {
+		return nil, err
+	}
+	return readStudy(path, full)
+}
+
+// readStudy reads a study, with a demand file in place of its own where one is given.
+func readStudy(path, demandFile string) (*Study, error) {
 	if info, err := os.Stat(path); err == nil && info.IsDir() {
 		path = filepath.Join(path, "study.toml")
 	}
-	d := &draft{f: &faults{}, counts: make(map[string]*countTable)}
+	d := &draft{f: &faults{}, counts: make(map[string]*countTable), instead: demandFile}
 	d.File, d.Dir = path, filepath.Dir(path)
 	data, ok := d.load(path, 0, 0, path)
 	if !ok {
@@ -132,6 +147,7 @@ func (d *draft) read() {
 	if d.network == nil || sc.Demand == nil {
 		return
 	}
+	d.Cost = d.cost(sc.Demand.Classes)
 	sc.Corridors = d.corridors()
 	sc.Junctions = d.junctions()
 	sc.Outflows = d.outflows()
