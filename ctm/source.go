@@ -1,6 +1,8 @@
 package ctm
 
 import (
+	"math"
+
 	"example.org/tailback/demand"
 	"example.org/tailback/network"
 )
@@ -10,12 +12,28 @@ type source struct {
 	link    network.LinkID
 	first   int  // the link's first segment
 	alone   bool // nothing else leads into the link
-	entries []*demand.Entry
+	entries []arrivals
 	// By class, in vehicles: arrived this step or still waiting; all that wanted to enter; all that did.
 	waiting, wanted, entered []float64
 	seconds                  []float64 // vehicle-seconds waited
 	available                float64   // passenger cars that could enter this step
 	flow                     float64   // passenger cars that do
+}
+
+// arrivals is one entry and, so that most steps need no look at its profile, the flow that holds for a while.
+type arrivals struct {
+	*demand.Entry
+	level, until float64
+}
+
+// vehicles that arrive from one time to another.
+func (a *arrivals) vehicles(from, to float64) float64 {
+	if to <= a.until {
+		return a.level * (to - from)
+	}
+	veh := a.Flow.Vehicles(from, to)
+	a.level, a.until = a.Flow.Level(to)
+	return veh
 }
 
 // addSources makes one queue for each link that entries name, in the order in which they first do.
@@ -34,7 +52,7 @@ func (m *Model) addSources() {
 				alone: len(m.sc.Network.In(m.sc.Network.Links[e.Link].From)) == 0, waiting: buf[:c], wanted: buf[c : 2*c], entered: buf[2*c : 3*c], seconds: buf[3*c:],
 			})
 		}
-		m.sources[at].entries = append(m.sources[at].entries, e)
+		m.sources[at].entries = append(m.sources[at].entries, arrivals{Entry: e, until: math.Inf(-1)})
 	}
 }
 
@@ -44,8 +62,14 @@ func (m *Model) arrive() {
 	to := m.grid.Time(m.step + 1)
 	for i := range m.sources {
 		s := &m.sources[i]
-		for _, e := range s.entries {
-			veh := e.Flow.Vehicles(from, to)
+		for k := range s.entries {
+			e := &s.entries[k]
+			veh := e.vehicles(from, to)
+			if len(s.waiting) == 1 {
+				s.waiting[0] += veh
+				s.wanted[0] += veh
+				continue
+			}
 			for c := range s.waiting {
 				share := 1.0
 				if e.Mix != nil {

@@ -115,12 +115,26 @@ func (p *Profile) Vehicles(from, to float64) float64 {
 		}
 		return p.values[0] * (to - from)
 	}
-	if a := (from - p.start) / p.every; p.mid == nil && a >= 0 { // mostly: within one interval
-		if i := int(a); i < len(p.values) && to <= p.start+float64(i+1)*p.every {
-			return p.values[i] * (to - from)
-		}
+	if flow, until := p.Level(from); to <= until {
+		return flow * (to - from)
 	}
 	return p.cumulative(to) - p.cumulative(from)
+}
+
+// Level is the flow (veh/s) that holds from a time on, and until when. Where straight lines or a clipped end make the
+// flow change all the time, or soon, until is the time itself.
+func (p *Profile) Level(t float64) (flow, until float64) {
+	switch {
+	case p.mid != nil || p.clipped:
+		return 0, t
+	case p.every == 0 && len(p.values) > 0:
+		return p.values[0], math.Inf(1)
+	}
+	i := int((t - p.start) / p.every)
+	if t < p.start || i >= len(p.values) {
+		return 0, t
+	}
+	return p.values[i], p.start + float64(i+1)*p.every
 }
 
 // cumulative is the number of vehicles from start to t.
