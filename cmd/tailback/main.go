@@ -29,6 +29,7 @@ type commands struct {
 	Check   checkCommand   `cmd:"" help:"Read a study and print what was understood, without a run."`
 	Run     runCommand     `cmd:"" help:"Compute a study and write its results."`
 	Compare compareCommand `cmd:"" help:"Compute the base and its alternatives, and print and write the differences."`
+	Hours   hoursCommand   `cmd:"" help:"Find the hours in which a closure keeps the limits of a policy."`
 	Sample  sampleCommand  `cmd:"" help:"Write the demo study into a folder."`
 
 	Version kong.VersionFlag `help:"Print the version and stop."`
