@@ -141,7 +141,7 @@ func (s *screen) reached(queue int) []string {
 // traffic writes what the whole network did.
 func (s *screen) traffic(b *strings.Builder) {
 	t := &s.result.Totals
-	b.WriteString(block("delay", fmt.Sprintf("%s in all, of %s on the road over %s", hours(t.Delay), hours(t.Seconds), distance(t.Metres, s.units))))
+	b.WriteString(block("delay", fmt.Sprintf("%s in all, waiting outside included; %s on the road over %s", hours(t.Delay), hours(t.Seconds), distance(t.Metres, s.units))))
 	outside := "no vehicle had to wait to enter"
 	if few(t.WaitingSeconds/unit.Hour) != few(0) {
 		outside = fmt.Sprintf("%s waited to enter, %s vehicles still do at the end", hours(t.WaitingSeconds), whole(t.Waiting))
