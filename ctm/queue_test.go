@@ -10,11 +10,10 @@ import (
 
 // longest records the longest queue and when the last one was seen.
 type longest struct {
-	finder       observe.Finder
-	length, at   float64
-	cleared      float64
-	maxVehicles  float64
-	firstReached float64
+	finder      observe.Finder
+	length, at  float64
+	cleared     float64
+	maxVehicles float64
 }
 
 func (o *longest) Observe(v ctm.View) error {

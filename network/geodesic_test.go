@@ -19,8 +19,10 @@ func TestGeodesic(t *testing.T) {
 		{"a degree of the equator", [2]float64{0, 0}, [2]float64{1, 0}, 6378137 * math.Pi / 180, 1e-9},
 		{"a meridian quadrant", [2]float64{17, 0}, [2]float64{17, 90}, 10001965.729, 1e-9},
 		{
-			"Flinders Peak to Buninyong", [2]float64{dms(144, 25, 29.52440), -dms(37, 57, 3.72030)},
-			[2]float64{dms(143, 55, 35.38390), -dms(37, 39, 10.15610)}, 54972.271, 1e-7,
+			"Flinders Peak to Buninyong",
+			[2]float64{dms(144, 25, 29.52440), -dms(37, 57, 3.72030)},
+			[2]float64{dms(143, 55, 35.38390), -dms(37, 39, 10.15610)},
+			54972.271, 1e-7,
 		},
 		{"one point", [2]float64{-40, 12}, [2]float64{-40, 12}, 0, 0},
 	} {
