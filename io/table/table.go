@@ -16,7 +16,7 @@ import (
 func Write(dir string, r *study.Result, meta Meta) error {
 	return Replace(dir, func(tmp string) error {
 		for _, write := range []func(string, *study.Result) error{
-			writeLinks, writeEntries, writeNetwork, writeCorridors, writeQueues, writeBottlenecks, writeThroughput, writeSpillback,
+			writeLinks, writeEntries, writeNetwork, writeCorridors, writeQueues, writeBottlenecks, writeThroughput, writeSpillback, writeWarning,
 		} {
 			if err := write(tmp, r); err != nil {
 				return err
