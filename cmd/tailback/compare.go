@@ -30,7 +30,14 @@ func (c *compareCommand) Run(s session) error {
 	if err != nil {
 		return err
 	}
+	found, err := r.judge(results)
+	if err != nil {
+		return err
+	}
 	if err := r.write(results); err != nil {
+		return err
+	}
+	if err := r.writeFindings(found); err != nil {
 		return err
 	}
 	var list []*study.Comparison
@@ -49,7 +56,10 @@ func (c *compareCommand) Run(s session) error {
 		_, err = s.out.Write(text)
 		return err
 	}
-	return (&sideBySide{r, results, list}).write(s.out)
+	if err := (&sideBySide{r, results, list}).write(s.out); err != nil || c.Policy == "" {
+		return err
+	}
+	return writeVerdicts(s.out, found)
 }
 
 // sideBySide is the comparison for people to read.

@@ -60,7 +60,7 @@ func limitText(l *study.Limit, h *chart) string {
 	case study.FlowLimit:
 		text = fmt.Sprintf("demand through the closure at most %s per open lane", h.units.Flow(l.PerLane))
 	case study.LanesLimit:
-		text = fmt.Sprintf("at least %g lanes stay open", l.Open)
+		text = fmt.Sprintf("lanes that stay open: at least %g", l.Open)
 	case study.ReachLimit:
 		var names []string
 		for _, n := range l.Nodes {

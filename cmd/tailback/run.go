@@ -21,15 +21,17 @@ type job struct {
 	Out         string   `placeholder:"DIR" help:"Folder for results; default results/ beside the study."`
 	Units       string   `placeholder:"SYSTEM" default:"metric" help:"Units of the screen: metric or us (files are metric)."`
 	JSON        bool     `name:"json" help:"Print JSON in place of the screen."`
+	Policy      string   `placeholder:"FILE" help:"Limits (TOML) to hold every run against."`
 	Queued      string   `placeholder:"RULE" help:"What counts as queued: density, a speed such as '50 km/h', or a share of the free speed such as '60 %%'."`
 }
 
 // ready is a study that can be computed.
 type ready struct {
 	*studyfile.Study
-	units unit.System
-	out   string
-	alts  []*studyfile.Alternative // that were asked for
+	units  unit.System
+	out    string
+	alts   []*studyfile.Alternative // that were asked for
+	policy *studyfile.Policy        // nil for none
 }
 
 // prepare reads the study and makes sure that the results can be written.
@@ -48,6 +50,11 @@ func (c *job) prepare() (*ready, error) {
 		}
 	}
 	r := &ready{Study: st, units: units, out: c.Out}
+	if c.Policy != "" {
+		if r.policy, err = studyfile.ReadPolicy(c.Policy, st.Base.Network); err != nil {
+			return nil, inputError{err}
+		}
+	}
 	if r.alts, err = c.choose(st); err != nil {
 		return nil, inputError{err}
 	}
@@ -143,7 +150,14 @@ func (c *runCommand) Run(s session) error {
 	if err != nil {
 		return err
 	}
+	found, err := r.judge(results)
+	if err != nil {
+		return err
+	}
 	if err := r.write(results); err != nil {
+		return err
+	}
+	if err := r.writeFindings(found); err != nil {
 		return err
 	}
 	for i, result := range results {
@@ -164,6 +178,9 @@ func (c *runCommand) Run(s session) error {
 			view.notes, view.brief = r.alts[i-1].Notes, true
 		}
 		if err := view.write(s.out); err != nil {
+			return err
+		}
+		if err := found[i].write(s.out); err != nil {
 			return err
 		}
 	}
