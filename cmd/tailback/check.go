@@ -140,6 +140,14 @@ func (u *understanding) diagrams(b *strings.Builder) {
 		b.WriteString(block(label, fmt.Sprintf("%s (%s)", text, plural(count[text], "link"))))
 		label = ""
 	}
+	for _, s := range diagram.Shapes() {
+		for i := range n.Links {
+			if n.Links[i].Shape == s.Name && s.Notes != "" {
+				b.WriteString(block("note", s.Name+": "+s.Notes))
+				break
+			}
+		}
+	}
 }
 
 // diagram describes a link's diagram.

@@ -28,9 +28,7 @@ func (r *Result) say(format string, args ...any) {
 func (r *Result) warn() {
 	r.Warnings = append(r.Warnings, r.Grid.Notes...)
 	n := r.Scenario.Network
-	for _, name := range endless(n) {
-		r.say("the shape `%s` has no jam density: a road of it stores without end, so its queues are too short", name)
-	}
+	r.warnShapes()
 	for i, link := range r.Entries.Links {
 		r.warnWaiting(i, &n.Links[link])
 	}
@@ -41,18 +39,20 @@ func (r *Result) warn() {
 	}
 }
 
-// endless lists the shapes in use that have no jam density, each once.
-func endless(n *network.Network) []string {
-	var names []string
-	seen := make(map[string]bool)
-	for i := range n.Links {
-		l := &n.Links[i]
-		if math.IsInf(l.Diagram.Jam(), 1) && !seen[l.Shape] {
-			seen[l.Shape] = true
-			names = append(names, l.Shape)
+// warnShapes says what the shapes in use cannot do, where that bears on a queue: those without a jam density, and
+// the one whose flow jumps.
+func (r *Result) warnShapes() {
+	used := make(map[string]bool)
+	for i := range r.Scenario.Network.Links {
+		used[r.Scenario.Network.Links[i].Shape] = true
+	}
+	for _, s := range diagram.Shapes() {
+		switch {
+		case !used[s.Name]:
+		case s.Name == "underwood" || s.Name == "drake" || s.Name == "inverse-lambda":
+			r.say("shape `%s`: %s", s.Name, s.Notes)
 		}
 	}
-	return names
 }
 
 // leastWaiting is how many vehicles must wait outside at once to be worth a warning: fewer come and go within a
@@ -75,8 +75,8 @@ func (r *Result) warnWaiting(entry int, link *network.Link) {
 	row := &r.Entries.Rows[at][entry]
 	span := r.Links.Times[at+1] - r.Links.Times[at]
 	density := r.queuedDensity(link, row.Entered/span)
-	r.say("a queue leaves the map at entry `%s`: up to %.0f vehicles wait outside (at %s), %.1f vehicle-hours in all; the study needs about %.1f km more road upstream",
-		link.Name, worst, unit.Clock(r.Links.Times[at+1]), hours, worst/density/1000)
+	r.say("a queue leaves the map at entry `%s`: up to %.0f vehicles wait outside (at %s), %.1f vehicle-hours in all; the study needs about %.1f km (%.1f mi) more road upstream",
+		link.Name, worst, unit.Clock(r.Links.Times[at+1]), hours, worst/density/unit.Kilometre, worst/density/unit.Mile)
 	if last := r.Entries.Rows[len(r.Entries.Rows)-1][entry]; last.Waiting >= leastWaiting {
 		rate := last.Entered / span
 		more := math.Inf(1)
