@@ -39,6 +39,7 @@ type Model struct {
 	lastOf []int     // by link: its last segment
 	wk     work
 	demand *demand.Demand
+	turns  demand.Turns
 	turnAt float64 // when turning fractions change next
 }
 
@@ -67,7 +68,7 @@ func New(sc *Scenario) (*Model, error) {
 	}
 	sc = stretched(sc, g)
 	m := &Model{
-		sc: sc, grid: g, demand: sc.Demand,
+		sc: sc, grid: g, demand: sc.Demand, turns: sc.Demand.Turns(),
 		n:     make([]float64, g.Cells),
 		roads: make([]Road, len(g.Segments)), coefs: make([]coef, len(g.Segments)),
 		first: make([]float64, len(g.Segments)), last: make([]float64, len(g.Segments)),

@@ -166,7 +166,7 @@ func (m *Model) fillTurn(row []float64, from network.LinkID, out []network.LinkI
 		row[0] = 1
 		return
 	}
-	turn := m.demand.Lookup(from, class)
+	turn := m.turns.Lookup(from, class)
 	if turn == nil {
 		return
 	}

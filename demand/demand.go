@@ -73,45 +73,75 @@ func (d *Demand) EntryLinks() []network.LinkID {
 	return links
 }
 
-// Lookup returns the turning fractions for (from, class): those of the class where given, else those of all
-// classes, else nil.
-func (d *Demand) Lookup(from network.LinkID, class ClassID) *Turning {
-	var all *Turning
+// Turns finds turning fractions by approach.
+type Turns map[network.LinkID][]*Turning
+
+// Turns indexes the turning fractions.
+func (d *Demand) Turns() Turns {
+	index := make(Turns, len(d.Turnings))
 	for i := range d.Turnings {
 		t := &d.Turnings[i]
-		if t.From != from {
-			continue
-		}
-		if t.Class == class {
-			return t
-		}
-		if t.Class == AllClasses {
-			all = t
+		index[t.From] = append(index[t.From], t)
+	}
+	return index
+}
+
+// Lookup returns the turning fractions for (from, class): those of the class where given, else those of all
+// classes, else nil.
+func (t Turns) Lookup(from network.LinkID, class ClassID) *Turning {
+	var all *Turning
+	for _, turn := range t[from] {
+		switch turn.Class {
+		case class:
+			return turn
+		case AllClasses:
+			all = turn
 		}
 	}
 	return all
+}
+
+// Lookup is Turns().Lookup for a single question.
+func (d *Demand) Lookup(from network.LinkID, class ClassID) *Turning {
+	index := Turns{}
+	for i := range d.Turnings {
+		if t := &d.Turnings[i]; t.From == from {
+			index[from] = append(index[from], t)
+		}
+	}
+	return index.Lookup(from, class)
 }
 
 // CheckTurns returns a fault for every approach of a node with two or more ways out that lacks turning
 // fractions for some class.
 func (d *Demand) CheckTurns(n *network.Network) network.Problems {
 	var faults network.Problems
+	turns := d.Turns()
 	for i := range n.Nodes {
-		if len(n.Out(network.NodeID(i))) < 2 {
+		ways := len(n.Out(network.NodeID(i)))
+		if ways < 2 {
 			continue
 		}
 		for _, from := range n.In(network.NodeID(i)) {
-			for c := range d.Classes {
-				if d.Lookup(from, ClassID(c)) == nil {
-					faults = append(faults, network.Problem{
-						Link: from, Node: network.NodeID(i),
-						Text: fmt.Sprintf("node `%s` has %d ways out, but no turning fractions say where the traffic of link `%s` goes", n.Nodes[i].Name, len(n.Out(network.NodeID(i))), n.Links[from].Name),
-						Hint: fmt.Sprintf("add [[turning]] with node = %q, from = %q", n.Nodes[i].Name, n.Links[from].Name),
-					})
-					break
-				}
+			if d.turnsAll(turns, from) {
+				continue
 			}
+			faults = append(faults, network.Problem{
+				Link: from, Node: network.NodeID(i),
+				Text: fmt.Sprintf("node `%s` has %d ways out, but no turning fractions say where the traffic of link `%s` goes", n.Nodes[i].Name, ways, n.Links[from].Name),
+				Hint: fmt.Sprintf("add [[turning]] with node = %q, from = %q", n.Nodes[i].Name, n.Links[from].Name),
+			})
 		}
 	}
 	return faults
+}
+
+// turnsAll reports whether every class has turning fractions at the end of a link.
+func (d *Demand) turnsAll(turns Turns, from network.LinkID) bool {
+	for c := range d.Classes {
+		if turns.Lookup(from, ClassID(c)) == nil {
+			return false
+		}
+	}
+	return true
 }

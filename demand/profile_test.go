@@ -97,10 +97,11 @@ func TestLookupPrefersTheClass(t *testing.T) {
 		Classes:  []Class{{"car", 1}, {"truck", 2}},
 		Turnings: []Turning{{From: 3, Class: AllClasses}, {From: 3, Class: 1}, {From: 4, Class: 1}},
 	}
-	if d.Lookup(3, 0) != &d.Turnings[0] || d.Lookup(3, 1) != &d.Turnings[1] {
+	turns := d.Turns()
+	if turns.Lookup(3, 0) != &d.Turnings[0] || turns.Lookup(3, 1) != &d.Turnings[1] {
 		t.Error("one class wins over all classes")
 	}
-	if d.Lookup(4, 0) != nil {
+	if turns.Lookup(4, 0) != nil {
 		t.Error("fractions of trucks are none of cars")
 	}
 	if got := d.PCE([]float64{0.9, 0.1}); !close(got, 1.1) {

@@ -243,6 +243,12 @@ func (d *draft) covers(t *table, key string, from, to float64) bool {
 	return false
 }
 
+// approach is what one [[turning]] speaks of.
+type approach struct {
+	from  network.LinkID
+	class demand.ClassID
+}
+
 // turning reads one [[turning]].
 func (d *draft) turning(t *table, dem *demand.Demand) {
 	t.known("node from to class start every")
@@ -265,10 +271,11 @@ func (d *draft) turning(t *table, dem *demand.Demand) {
 		t.fault("from", d.approaches(turn.Node), "link `%s` does not end at node `%s`", n.Links[turn.From].Name, n.Nodes[turn.Node].Name)
 	}
 	rows := d.fractions(t, to, &turn)
-	for _, other := range dem.Turnings {
-		if other.From == turn.From && other.Class == turn.Class && turn.From >= 0 {
+	if key := (approach{turn.From, turn.Class}); turn.From >= 0 {
+		if d.turned[key] {
 			t.fault("from", "", "link `%s` has its turning fractions twice", n.Links[turn.From].Name)
 		}
+		d.turned[key] = true
 	}
 	if t.bad || to.bad {
 		return

@@ -48,7 +48,8 @@ type draft struct {
 	nodeLine map[string]int
 	network  *network.Network
 	counts   map[string]*countTable
-	instead  string // a demand file in place of the study's, "" none
+	turned   map[approach]bool // approaches whose turning fractions have been read
+	instead  string            // a demand file in place of the study's, "" none
 }
 
 func (d *draft) warn(format string, args ...any) {
@@ -73,7 +74,7 @@ func readStudy(path, demandFile string) (*Study, error) {
 	if info, err := os.Stat(path); err == nil && info.IsDir() {
 		path = filepath.Join(path, "study.toml")
 	}
-	d := &draft{f: &faults{}, counts: make(map[string]*countTable), instead: demandFile}
+	d := &draft{f: &faults{}, counts: make(map[string]*countTable), turned: make(map[approach]bool), instead: demandFile}
 	d.File, d.Dir = path, filepath.Dir(path)
 	data, ok := d.load(path, 0, 0, path)
 	if !ok {
